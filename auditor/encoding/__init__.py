@@ -1,0 +1,1 @@
+"""From documents to integers: encoding, and what is measured on each document."""

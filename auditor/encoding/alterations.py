@@ -1,0 +1,54 @@
+"""Which words a normaliser alters: in case alone, or in more."""
+
+from __future__ import annotations
+
+from collections.abc import Callable
+from typing import Literal
+
+import regex
+
+Alteration = Literal[0, 1, 2]
+UNALTERED: Alteration = 0
+CASE_ONLY: Alteration = 1
+MORE_THAN_CASE: Alteration = 2
+
+# What normalisers insert; no word holds either (UAX #29).
+_INSERTED = str.maketrans("", "", " \u2581")
+_REMEMBERED = 400_000
+
+
+class Alterations:
+    """Judges words by ``normalize``, each distinct word once (as long as memory is bounded)."""
+
+    def __init__(self, normalize: Callable[[str], str]) -> None:
+        self._normalize = normalize
+        self._known: dict[str, Alteration] = {}
+
+    def of(self, word: str) -> Alteration:
+        """Return how the normaliser alters ``word`` when it stands alone."""
+        known = self._known.get(word)
+        if known is None:
+            if len(self._known) >= _REMEMBERED:
+                self._known.clear()
+            known = self._known[word] = judge(word, self._normalize(word))
+        return known
+
+
+def judge(word: str, normalized: str) -> Alteration:
+    """Return how ``normalized`` differs from ``word``, inserted spaces and markers aside.
+
+    Case is compared by full case folding as `regex` knows it.
+    """
+    if normalized == word:
+        return UNALTERED
+    bare = normalized.translate(_INSERTED)
+    if bare == word:
+        return UNALTERED
+    return CASE_ONLY if _same_but_for_case(word, bare) else MORE_THAN_CASE
+
+
+def _same_but_for_case(word: str, other: str) -> bool:
+    if word.isascii() and other.isascii():
+        return word.lower() == other.lower()
+    flags = regex.IGNORECASE | regex.FULLCASE | regex.VERSION1
+    return regex.fullmatch(regex.escape(word), other, flags=flags) is not None

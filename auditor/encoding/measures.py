@@ -1,0 +1,200 @@
+"""Integers of each document under one vocabulary: the columns that every figure is summed from."""
+
+from __future__ import annotations
+
+from dataclasses import dataclass
+from functools import cached_property
+
+import numpy as np
+
+from auditor.encoding.alterations import CASE_ONLY, MORE_THAN_CASE, Alterations
+from auditor.encoding.touching import SpanIndex
+from auditor.text.stretch import Stretch
+from auditor.vocabulary.engine import Bools, Ints
+from auditor.vocabulary.opening import Vocabulary
+from auditor.vocabulary.spans import Spans, coverage
+
+Columns = dict[str, Ints]
+
+
+def text_columns(stretch: Stretch, *, graphemes: Ints | None = None) -> Columns:
+    """Return the columns that no vocabulary changes, each of shape (documents,)."""
+    bounds = stretch.bounds
+    columns = {
+        "documents": np.ones(len(stretch), dtype=np.int64),
+        "bytes": stretch.bytes_before[bounds[1:]] - stretch.bytes_before[bounds[:-1]],
+        "characters": np.diff(bounds),
+        "ink_characters": stretch.ink_before[bounds[1:]] - stretch.ink_before[bounds[:-1]],
+        "words": stretch.per_document(stretch.words.starts),
+    }
+    return columns if graphemes is None else {**columns, "graphemes": graphemes}
+
+
+@dataclass
+class Reading:
+    """One vocabulary's tokens of one stretch, and the flags that measures share."""
+
+    stretch: Stretch
+    spans: Spans
+    vocabulary: Vocabulary
+    parse_control: bool
+
+    @cached_property
+    def control(self) -> Bools:
+        """Tokens that a control string of the text produced, shape (tokens,)."""
+        inventory, ids = self.vocabulary.inventory, self.spans.ids
+        if not self.parse_control:
+            return np.zeros(len(ids), dtype=np.bool_)
+        found = inventory.control[ids].copy()
+        if inventory.unknown is not None and inventory.control[inventory.unknown]:
+            for token in np.flatnonzero(ids == inventory.unknown).tolist():
+                found[token] = self._text_of(token).strip() == inventory.unknown_text
+        return found
+
+    def _text_of(self, token: int) -> str:
+        return self.stretch.joined[self.spans.starts[token] : self.spans.ends[token]]
+
+    @cached_property
+    def unknown(self) -> Bools:
+        """Tokens with the unknown id that no control string produced, shape (tokens,)."""
+        unknown = self.vocabulary.inventory.unknown
+        if unknown is None:
+            return np.zeros(len(self.spans.ids), dtype=np.bool_)
+        return (self.spans.ids == unknown) & ~self.control
+
+    @cached_property
+    def inked(self) -> Bools:
+        """Tokens whose span holds a character that is not whitespace, shape (tokens,)."""
+        ink = self.stretch.ink_before
+        return ink[self.spans.ends] > ink[self.spans.starts]
+
+    @cached_property
+    def byte_tokens(self) -> Bools:
+        """Byte tokens, shape (tokens,)."""
+        return self.vocabulary.inventory.stands_for_bytes[self.spans.ids] & self.inked
+
+    @cached_property
+    def touches(self) -> Ints:
+        """The number of tokens that touch each word, shape (words,)."""
+        return SpanIndex.of(self.spans).touching(self.stretch.words)
+
+    @cached_property
+    def unknown_touches(self) -> Ints:
+        """The number of unknown tokens that touch each word, shape (words,)."""
+        return SpanIndex.of(self.spans, self.unknown).touching(self.stretch.words)
+
+    def characters_under(self, tokens: Bools) -> Bools:
+        """Return which non-whitespace characters lie in the span of a chosen token."""
+        if not tokens.any():
+            return np.zeros(len(self.stretch.points), dtype=np.bool_)
+        covered = coverage(self.spans.starts[tokens], self.spans.ends[tokens], len(self.stretch.points))
+        return (covered > 0) & self.stretch.ink
+
+    @cached_property
+    def unknown_characters(self) -> Bools:
+        """Non-whitespace characters under unknown tokens, shape (characters,)."""
+        return self.characters_under(self.unknown)
+
+    @cached_property
+    def byte_spelled_characters(self) -> Bools:
+        """Non-whitespace characters under byte tokens, shape (characters,)."""
+        return self.characters_under(self.byte_tokens)
+
+    @cached_property
+    def dropped_characters(self) -> Bools:
+        """Non-whitespace characters that nothing stands for, shape (characters,)."""
+        every = np.ones(len(self.spans.ids), dtype=np.bool_)
+        bare = self.stretch.ink & ~self.characters_under(every)
+        lacking = self.vocabulary.inventory.lacking
+        return bare | self._with_lacking_bytes(lacking) if lacking else bare
+
+    def _with_lacking_bytes(self, lacking: tuple[int, ...]) -> Bools:
+        """Return the characters with a byte that has no entry and that no token over them holds."""
+        found = np.zeros(len(self.stretch.points), dtype=np.bool_)
+        missing = {bytes([byte]) for byte in lacking}
+        for place in np.flatnonzero(self.stretch.ink).tolist():
+            spelled = self.stretch.joined[place].encode()
+            wanted = [byte for byte in missing if byte in spelled]
+            if wanted:
+                held = self._bytes_over(place)
+                found[place] = any(byte not in held for byte in wanted)
+        return found
+
+    def _bytes_over(self, place: int) -> bytes:
+        over = np.flatnonzero((self.spans.starts <= place) & (self.spans.ends > place))
+        spelled = self.vocabulary.inventory.entry_bytes or []
+        return b"".join(spelled[number] or b"" for number in self.spans.ids[over].tolist())
+
+
+def token_columns(reading: Reading, limit_room: int | None) -> Columns:
+    """Return the columns of tokens, each of shape (documents,); ``limit_room`` in tokens."""
+    bounds = reading.spans.bounds
+    tokens = np.diff(bounds)
+    spans = reading.spans
+    columns = {
+        "tokens": tokens,
+        "unknown_tokens": _sums(reading.unknown, bounds),
+        "byte_tokens": _sums(reading.byte_tokens, bounds),
+        "whitespace_tokens": _sums((spans.ends > spans.starts) & ~reading.inked, bounds),
+        "control_strings": _sums(reading.control, bounds),
+        "truncated_tokens": np.maximum(0, tokens - limit_room) if limit_room is not None else 0 * tokens,
+    }
+    for flag, counted in _FLAGS.items():
+        columns[flag] = (columns[counted] > 0).astype(np.int64)
+    return columns
+
+
+_FLAGS = {
+    "documents_with_unknown": "unknown_tokens",
+    "documents_with_byte_tokens": "byte_tokens",
+    "documents_with_control_strings": "control_strings",
+    "truncated_documents": "truncated_tokens",
+}
+
+
+def word_columns(reading: Reading, alterations: Alterations) -> Columns:
+    """Return the columns of words, each of shape (documents,)."""
+    stretch, touches = reading.stretch, reading.touches
+    known = reading.unknown_touches == 0
+    altered = np.zeros(len(stretch.words), dtype=np.int64)
+    if reading.vocabulary.engine.alters:
+        altered = np.array([alterations.of(word) for word in stretch.word_texts], dtype=np.int64)
+    edges = np.searchsorted(stretch.words.starts, stretch.bounds)
+    return {
+        "pieces": _sums(touches, edges),
+        "known_words": _sums(known, edges),
+        "known_pieces": _sums(touches * known, edges),
+        "continued_words": _sums(touches >= 2, edges),
+        "unknown_words": _sums(~known, edges),
+        "case_folded_words": _sums(altered == CASE_ONLY, edges),
+        "changed_words": _sums(altered == MORE_THAN_CASE, edges),
+    }
+
+
+def character_columns(reading: Reading) -> Columns:
+    """Return the columns of characters, each of shape (documents,)."""
+    return {
+        "unknown_characters": reading.stretch.sum_per_document(reading.unknown_characters),
+        "byte_spelled_characters": reading.stretch.sum_per_document(reading.byte_spelled_characters),
+        "dropped_characters": reading.stretch.sum_per_document(reading.dropped_characters),
+    }
+
+
+def lossless_column(reading: Reading) -> Columns:
+    """Return the column of documents that come back exactly; all 0 without a decoder."""
+    engine, texts = reading.vocabulary.engine, reading.stretch.texts
+    if not engine.has_decoder:
+        return {"lossless_documents": np.zeros(len(texts), dtype=np.int64)}
+    flat, bounds = reading.spans.ids.tolist(), reading.spans.bounds.tolist()
+    decoded = engine.decode([flat[bounds[i] : bounds[i + 1]] for i in range(len(texts))])
+    same = [ours == theirs for ours, theirs in zip(texts, decoded, strict=True)]
+    return {"lossless_documents": np.array(same, dtype=np.int64)}
+
+
+def _sums(values: Ints | Bools, bounds: Ints) -> Ints:
+    """Return the sum of ``values`` between consecutive ``bounds``."""
+    before = np.zeros(len(values) + 1, dtype=np.int64)
+    np.cumsum(values, out=before[1:])
+    return before[bounds[1:]] - before[bounds[:-1]]
+
+

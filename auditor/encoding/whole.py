@@ -1,0 +1,120 @@
+"""Encodes every document whole and measures it: the plain path, and the oracle of any other."""
+
+from __future__ import annotations
+
+from collections import Counter
+from collections.abc import Iterator
+from dataclasses import dataclass
+
+import numpy as np
+
+from auditor.encoding.alterations import Alterations
+from auditor.encoding.broken import BrokenWords
+from auditor.encoding.fates import FATES, Fates
+from auditor.encoding.measures import (
+    Columns,
+    Reading,
+    character_columns,
+    lossless_column,
+    token_columns,
+    word_columns,
+)
+from auditor.encoding.touching import tokens_within
+from auditor.tallies.words import BrokenWord
+from auditor.text.stretch import Stretch
+from auditor.text.whitespace import KINDS, Runs
+from auditor.vocabulary.engine import Bools, Ints
+from auditor.vocabulary.opening import Vocabulary
+from auditor.vocabulary.spans import correct
+
+
+@dataclass(frozen=True, slots=True)
+class RunTable:
+    """Runs of whitespace as the whitespace tally takes them."""
+
+    kind_of: Ints
+    table: Ints
+    document_of: Ints
+
+
+@dataclass(frozen=True, slots=True)
+class LostCharacter:
+    """A character that did not come through whole, its fate, count, and its first document."""
+
+    character: str
+    fate: str
+    count: int
+    document: int
+
+
+@dataclass(frozen=True, slots=True)
+class Measured:
+    """What one vocabulary makes of one stretch; columns have shape (documents,)."""
+
+    columns: Columns
+    ids: Ints
+    runs: RunTable
+    broken: Counter[BrokenWord]
+    lost: list[LostCharacter]
+
+
+class WholeDocuments:
+    """Measures stretches under one vocabulary, each document encoded whole."""
+
+    def __init__(self, vocabulary: Vocabulary, *, parse_control: bool) -> None:
+        self.vocabulary = vocabulary
+        self._parse_control = parse_control
+        self._alterations = Alterations(vocabulary.engine.normalize)
+        self._fates = Fates(vocabulary)
+        self._broken = BrokenWords(vocabulary.inventory)
+
+    def measure(self, stretch: Stretch, runs: Runs) -> Measured:
+        """Return the measures of ``stretch``; raises what the engine raises on a document."""
+        encoding = self.vocabulary.engine.encode(stretch.texts)
+        spans = correct(encoding, stretch, self.vocabulary.inventory)
+        reading = Reading(stretch, spans, self.vocabulary, self._parse_control)
+        columns = {
+            **token_columns(reading, self.vocabulary.room),
+            **word_columns(reading, self._alterations),
+            **character_columns(reading),
+            **lossless_column(reading),
+        }
+        lost = list(_lost_characters(reading))
+        return Measured(columns, spans.ids, self._run_table(reading, runs), self._broken.find(reading), lost)
+
+    def _run_table(self, reading: Reading, runs: Runs) -> RunTable:
+        probed = [self._fates.of(form) for form in runs.forms]
+        kinds = [KINDS.index(form.kind) for form in runs.forms]
+        by_form = np.zeros((len(runs.forms), 2 + len(FATES) + 1), dtype=np.int64)
+        for place, found in enumerate(probed):
+            by_form[place, 0] = 1
+            by_form[place, -1] = found.by_bytes
+            if found.fate is not None:
+                by_form[place, 2 + FATES.index(found.fate)] = 1
+        table = by_form[runs.form_of]
+        table[:, 1] = _tokens_in_runs(reading, runs)
+        kind_of = np.array(kinds, dtype=np.int64)[runs.form_of]
+        return RunTable(kind_of, table, reading.stretch.document_of(runs.starts))
+
+
+def _tokens_in_runs(reading: Reading, runs: Runs) -> Ints:
+    """Whitespace and zero-width runs are disjoint, so that one look-up serves both."""
+    return tokens_within(reading.spans, runs.starts, runs.ends)
+
+
+def _lost_characters(reading: Reading) -> Iterator[LostCharacter]:
+    fates = {
+        "unknown": reading.unknown_characters,
+        "byte-spelled": reading.byte_spelled_characters,
+        "dropped": reading.dropped_characters,
+    }
+    for fate, flagged in fates.items():
+        yield from _by_character(reading.stretch, flagged, fate)
+
+
+def _by_character(stretch: Stretch, flagged: Bools, fate: str) -> Iterator[LostCharacter]:
+    places = np.flatnonzero(flagged)
+    points, firsts, counts = np.unique(stretch.points[places], return_index=True, return_counts=True)
+    documents = stretch.document_of(places[firsts])
+    for point, document, count in zip(points.tolist(), documents.tolist(), counts.tolist(), strict=True):
+        yield LostCharacter(chr(point), fate, count, document)

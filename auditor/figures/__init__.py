@@ -1,0 +1,1 @@
+"""From integer tallies to figures with intervals; every figure is declared once."""

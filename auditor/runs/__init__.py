@@ -1,0 +1,1 @@
+"""Runs: one machine, its processes, and the folder an audit is written to."""

@@ -1,0 +1,1 @@
+"""Integer counts that merge in any order; nothing here knows a library that encodes."""

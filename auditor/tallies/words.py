@@ -1,0 +1,86 @@
+"""Words that are broken or lost: each form with how it is broken, counted exactly.
+
+Distinct words never stop coming, so that the counts in memory are bounded: past the bound they
+are written to a temporary file in sorted order, and all such files are merged when read.
+"""
+
+from __future__ import annotations
+
+import heapq
+import tempfile
+from collections.abc import Iterator
+from itertools import groupby
+from typing import IO, NamedTuple
+
+import orjson
+
+from auditor.tallies.base import State, Tally
+
+
+class BrokenWord(NamedTuple):
+    """A word as written and the way it is broken; rows of one word differ by context."""
+
+    word: str
+    broken: str
+    pieces: int
+    unknown: int
+
+
+class WordsTally(Tally):
+    """Occurrences of each ``BrokenWord``; at most ``in_memory`` of them are held in memory."""
+
+    def __init__(self, in_memory: int = 200_000) -> None:
+        self._bound = in_memory
+        self._held: dict[BrokenWord, int] = {}
+        self._spilled: list[IO[bytes]] = []
+
+    @property
+    def settings(self) -> State:
+        return {}
+
+    def add(self, row: BrokenWord, count: int) -> None:
+        """Add ``count`` occurrences of ``row``."""
+        self._held[row] = self._held.get(row, 0) + count
+        if len(self._held) > self._bound:
+            self._spill()
+
+    def _spill(self) -> None:
+        file = tempfile.TemporaryFile(prefix="auditor-words-")  # noqa: SIM115 - lives with the tally
+        for row, count in sorted(self._held.items()):
+            file.write(orjson.dumps([*row, count]) + b"\n")
+        self._spilled.append(file)
+        self._held = {}
+
+    def rows(self) -> Iterator[tuple[BrokenWord, int]]:
+        """Yield every row with its count, in sorted order, whatever lies in memory or on disk."""
+        runs = [_read(file) for file in self._spilled]
+        merged = heapq.merge(sorted(self._held.items()), *runs)
+        for row, same in groupby(merged, key=lambda item: item[0]):
+            yield row, sum(count for _, count in same)
+
+    def _add(self, other: WordsTally) -> None:
+        for row, count in other.rows():
+            self.add(row, count)
+
+    def counts(self) -> State:
+        return {"rows": [[*row, count] for row, count in self.rows()]}
+
+    def fill(self, counts: State) -> None:
+        for *row, count in counts["rows"]:
+            self.add(BrokenWord(*row), count)
+
+    def __reduce__(self) -> tuple[object, ...]:
+        return _rebuilt, (self._bound, self.counts())
+
+
+def _rebuilt(bound: int, counts: State) -> WordsTally:
+    tally = WordsTally(bound)
+    tally.fill(counts)
+    return tally
+
+
+def _read(file: IO[bytes]) -> Iterator[tuple[BrokenWord, int]]:
+    file.seek(0)
+    for line in file:
+        *row, count = orjson.loads(line)
+        yield BrokenWord(*row), count

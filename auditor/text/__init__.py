@@ -1,0 +1,1 @@
+"""What can be said of a text without a vocabulary: properties, words, whitespace, cuts."""

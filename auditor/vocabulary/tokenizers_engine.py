@@ -1,0 +1,176 @@
+"""Vocabularies in the `tokenizer.json` form, encoded by the `tokenizers` library."""
+
+from __future__ import annotations
+
+from itertools import chain
+from typing import Any
+
+import numpy as np
+import orjson
+import regex
+from tokenizers import Tokenizer
+
+from auditor.errors import VocabularyError
+from auditor.vocabulary import bytelevel
+from auditor.vocabulary.engine import Encoding, Inventory, bounds_of, flags
+
+METASPACE = "\u2581"
+_BYTE_PIECE = regex.compile(r"<0x[0-9A-F]{2}>")
+
+
+class TokenizersEngine:
+    """Encodes with `tokenizers`; ``description`` is the parsed `tokenizer.json`.
+
+    Truncation, padding and dropout are switched off, and the post-processor is taken away once its
+    overhead is known: it would add the template's tokens and may trim spaces off the spans.
+    """
+
+    def __init__(self, description: dict[str, Any], *, control_strings: str, where: str) -> None:
+        self.description = description
+        self._library = _load(_for_measuring(description), where)
+        self.overhead = (
+            self._library.num_special_tokens_to_add(False),  # noqa: FBT003 - the library's own order
+            self._library.num_special_tokens_to_add(True),  # noqa: FBT003
+        )
+        self._library.post_processor = None
+        self._library.encode_special_tokens = control_strings == "text"
+        self._normalizer = _word_normalizer(description, where)
+
+    @property
+    def has_decoder(self) -> bool:
+        """Whether the file names a decoder."""
+        return self._library.decoder is not None
+
+    @property
+    def alters(self) -> bool:
+        """Whether the file names a normaliser that is more than a spelling."""
+        return self._normalizer is not None
+
+    def encode(self, texts: list[str]) -> Encoding:
+        """Return the tokens of ``texts``."""
+        found = self._library.encode_batch(texts, add_special_tokens=False)
+        bounds = bounds_of([len(encoding) for encoding in found])
+        count = int(bounds[-1])
+        ids = np.fromiter(chain.from_iterable(e.ids for e in found), np.int64, count)
+        pairs = chain.from_iterable(chain.from_iterable(e.offsets for e in found))
+        offsets = np.fromiter(pairs, np.int64, 2 * count).reshape(-1, 2)
+        return Encoding(ids, offsets[:, 0], offsets[:, 1], bounds)
+
+    def decode(self, ids: list[list[int]]) -> list[str]:
+        """Return the texts that ``ids`` stand for."""
+        return list(self._library.decode_batch(ids, skip_special_tokens=False))
+
+    def normalize(self, word: str) -> str:
+        """Return what the normaliser makes of ``word``."""
+        return word if self._normalizer is None else str(self._normalizer.normalize_str(word))
+
+    def inventory(self) -> Inventory:
+        """Return the entries as tables by id."""
+        by_entry: dict[str, int] = self._library.get_vocab(with_added_tokens=True)
+        size = max(by_entry.values(), default=-1) + 1
+        entries: list[str | None] = [None] * size
+        for entry, number in by_entry.items():
+            entries[number] = entry
+        added = self.description.get("added_tokens") or []
+        literal = {by_entry[token["content"]] for token in added if token["content"] in by_entry}
+        control = [by_entry[t["content"]] for t in added if t["special"] and t["content"] in by_entry]
+        spelled = _spelled_bytes(entries, literal) if self._is_byte_level() else None
+        unknown = self._unknown(by_entry)
+        marker = bytelevel.SPACE if spelled is not None else METASPACE
+        return Inventory(
+            entries=entries,
+            entry_bytes=spelled,
+            marker=marker,
+            marker_only=flags(size, [i for i, e in enumerate(entries) if e and not e.strip(marker)]),
+            stands_for_bytes=flags(size, self._byte_ids(entries, spelled)),
+            control=flags(size, control),
+            unknown=unknown,
+            unknown_text=None if unknown is None else entries[unknown],
+            byte_kind=self._byte_kind(),
+            lacking=_lacking(by_entry) if spelled is not None else (),
+        )
+
+    def _is_byte_level(self) -> bool:
+        steps = [*steps_of(self.description, "pre_tokenizer"), *steps_of(self.description, "normalizer")]
+        return any(step["type"] == "ByteLevel" for step in steps)
+
+    def _byte_kind(self) -> str:
+        if self._is_byte_level():
+            return "byte-level"
+        return "fallback" if self.description["model"].get("byte_fallback") else "none"
+
+    def _byte_ids(self, entries: list[str | None], spelled: list[bytes | None] | None) -> list[int]:
+        if spelled is not None:
+            return [i for i, b in enumerate(spelled) if b is not None and not bytelevel.is_whole_text(b)]
+        if self._byte_kind() == "none":
+            return []
+        return [i for i, entry in enumerate(entries) if entry and _BYTE_PIECE.fullmatch(entry)]
+
+    def _unknown(self, by_entry: dict[str, int]) -> int | None:
+        model = self.description["model"]
+        if model["type"] == "Unigram":
+            unknown = model.get("unk_id")
+            return None if unknown is None else int(unknown)
+        return by_entry.get(model.get("unk_token") or "")
+
+
+def steps_of(description: dict[str, Any], part: str) -> list[dict[str, Any]]:
+    """Return the steps of a normaliser, pre-tokeniser or decoder, sequences laid flat."""
+    return _flattened(description.get(part))
+
+
+def _flattened(step: dict[str, Any] | None) -> list[dict[str, Any]]:
+    if step is None:
+        return []
+    for inner in ("normalizers", "pretokenizers", "decoders", "processors"):
+        if step["type"] == "Sequence" and inner in step:
+            return [leaf for child in step[inner] for leaf in _flattened(child)]
+    return [step]
+
+
+def _for_measuring(description: dict[str, Any]) -> dict[str, Any]:
+    changed = {**description, "truncation": None, "padding": None}
+    changed["model"] = dict(description["model"])
+    if changed["model"].get("dropout") is not None:
+        changed["model"]["dropout"] = None
+    steps = [{**s, **({"cleanup": False} if "cleanup" in s else {})} for s in steps_of(description, "decoder")]
+    changed["decoder"] = _rejoined(steps, "decoders")
+    return changed
+
+
+def _rejoined(steps: list[dict[str, Any]], inner: str) -> dict[str, Any] | None:
+    if len(steps) <= 1:
+        return steps[0] if steps else None
+    return {"type": "Sequence", inner: steps}
+
+
+def _load(description: dict[str, Any], where: str) -> Tokenizer:
+    try:
+        return Tokenizer.from_str(orjson.dumps(description).decode())
+    except Exception as fault:
+        raise VocabularyError(
+            f"the tokenizers library cannot open this vocabulary ({fault}).",
+            hint="It may have been written by another version of the library, or be damaged; "
+            "save it again with the version named by `auditor --version`.",
+            where=where,
+        ) from fault
+
+
+def _word_normalizer(description: dict[str, Any], where: str) -> Any:  # noqa: ANN401 - untyped there
+    """Return the normaliser without its byte-level step, which spells and does not alter."""
+    steps = [step for step in steps_of(description, "normalizer") if step["type"] != "ByteLevel"]
+    if not steps:
+        return None
+    model = {"type": "WordLevel", "vocab": {"?": 0}, "unk_token": "?"}
+    return _load({"model": model, "normalizer": _rejoined(steps, "normalizers")}, where).normalizer
+
+
+def _spelled_bytes(entries: list[str | None], literal: set[int]) -> list[bytes | None]:
+    spelled = [None if entry is None else bytelevel.bytes_of(entry) for entry in entries]
+    for number in literal:
+        spelled[number] = (entries[number] or "").encode()
+    return spelled
+
+
+def _lacking(by_entry: dict[str, int]) -> tuple[int, ...]:
+    return tuple(b for b, character in bytelevel.CHARACTER_OF_BYTE.items() if character not in by_entry)
