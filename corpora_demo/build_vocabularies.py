@@ -16,7 +16,7 @@ import tempfile
 from collections import Counter, defaultdict
 from itertools import pairwise
 from pathlib import Path
-from typing import TYPE_CHECKING, Any, NamedTuple
+from typing import TYPE_CHECKING, Any
 
 import sentencepiece
 from tokenizers.normalizers import NFKC, BertNormalizer
@@ -29,13 +29,15 @@ HERE = Path(__file__).resolve().parent
 TEXT = HERE / "everyday.txt"
 VOCABULARIES = HERE / "vocabularies"
 
+Json = dict[str, Any]
 Pair = tuple[str, str]
+Learnt = tuple[dict[str, int], list[Pair]]  # entries (text to id) and the merges that made them
 NOT_SET = 1000000000000000019884624838656  # how a tokenizer_config.json says "no limit"
-KNOWN_CHARACTERS = 340  # so that the rarest of about 740 become the unknown token
+KNOWN_CHARACTERS = 340  # so that the rarest of about 530 become the unknown token
 
 
 class MergeLearner:
-    """Byte-pair counts over distinct words, kept up to date merge by merge.
+    """Counts of neighbouring symbols over distinct words, kept up to date merge by merge.
 
     The method is Sennrich, Haddow and Birch 2016 (arXiv:1508.07909). The most frequent pair is
     merged; among equally frequent ones the first in code-point order, left symbol before right.
@@ -87,22 +89,12 @@ class MergeLearner:
 def merged(symbols: list[str], pair: Pair, joined: str) -> list[str]:
     """`symbols` with every occurrence of `pair`, from the left, replaced by `joined`."""
     result: list[str] = []
-    at = 0
-    while at < len(symbols):
-        if tuple(symbols[at : at + 2]) == pair:
-            result.append(joined)
-            at += 2
+    for symbol in symbols:
+        if result and (result[-1], symbol) == pair:
+            result[-1] = joined
         else:
-            result.append(symbols[at])
-            at += 1
+            result.append(symbol)
     return result
-
-
-class Learnt(NamedTuple):
-    """Entries (text to id) of a vocabulary and the merges that made them, first merge first."""
-
-    entries: dict[str, int]
-    merges: list[Pair]
 
 
 def numbered(*groups: Iterable[str]) -> dict[str, int]:
@@ -116,31 +108,33 @@ def write_text(path: Path, text: str) -> None:
     path.write_text(text, encoding="utf-8", newline="\n")
 
 
-def write_json(path: Path, content: dict[str, Any]) -> None:
+def write_json(path: Path, content: Json) -> None:
     """Write JSON with one entry a line, in the order given."""
     write_text(path, json.dumps(content, ensure_ascii=False, indent=1) + "\n")
 
 
-def added_tokens(entries: dict[str, int], specials: Iterable[str]) -> list[dict[str, Any]]:
-    """The `added_tokens` block of a tokenizer.json for special tokens."""
-    flags = {"single_word": False, "lstrip": False, "rstrip": False, "normalized": False}
-    return [{"id": entries[s], "content": s, **flags, "special": True} for s in specials]
-
-
-def template(entries: dict[str, int], single: str, pair: str) -> dict[str, Any]:
+def template(entries: dict[str, int], single: str, second: str) -> Json:
     """A TemplateProcessing block; `A:0` or `B:1` names a text and its segment, the rest tokens."""
 
-    def parts(pattern: str) -> list[dict[str, Any]]:
+    def parts(pattern: str) -> list[Json]:
         found = [piece.rsplit(":", 1) for piece in pattern.split()]
         return [
             {"Sequence" if name in "AB" else "SpecialToken": {"id": name, "type_id": int(segment)}}
             for name, segment in found
         ]
 
-    names = sorted({piece.rsplit(":", 1)[0] for piece in pair.split()} - {"A", "B"})
+    names = sorted({piece.rsplit(":", 1)[0] for piece in single.split()} - {"A"})
     tokens = {name: {"id": name, "ids": [entries[name]], "tokens": [name]} for name in names}
-    steps = {"single": parts(single), "pair": parts(pair)}
+    steps = {"single": parts(single), "pair": parts(f"{single} {second}")}
     return {"type": "TemplateProcessing", **steps, "special_tokens": tokens}
+
+
+def tokenizer_file(entries: dict[str, int], specials: Iterable[str], parts: Json) -> Json:
+    """The content of a tokenizer.json with its special tokens; `parts` may replace any block."""
+    flags = {"single_word": False, "lstrip": False, "rstrip": False, "normalized": False}
+    added = [{"id": entries[s], "content": s, **flags, "special": True} for s in specials]
+    start = {"version": "1.0", "truncation": None, "padding": None, "added_tokens": added}
+    return {**start, "normalizer": None, **parts}
 
 
 def learn_wordpiece(paragraphs: list[str], specials: list[str]) -> Learnt:
@@ -151,16 +145,11 @@ def learn_wordpiece(paragraphs: list[str], specials: list[str]) -> Learnt:
     letters: Counter[str] = Counter(letter for word in found.elements() for letter in word)
     ranked = sorted(letters, key=lambda letter: (-letters[letter], letter))
     known = set(ranked[:KNOWN_CHARACTERS])
-    words = Counter(
-        {
-            (word[0], *(f"##{letter}" for letter in word[1:])): count
-            for word, count in found.items()
-            if known.issuperset(word)
-        }
-    )
+    kept = {word: count for word, count in found.items() if known.issuperset(word)}
+    words = Counter({(w[0], *(f"##{letter}" for letter in w[1:])): n for w, n in kept.items()})
     entries = numbered(specials, sorted({symbol for word in words for symbol in word}))
     learner = MergeLearner(words, lambda left, right: left + right.removeprefix("##"))
-    return Learnt(entries, learner.learn(entries, 4000))
+    return entries, learner.learn(entries, 4000)
 
 
 def build_wordpiece(folder: Path, paragraphs: list[str]) -> None:
@@ -168,24 +157,19 @@ def build_wordpiece(folder: Path, paragraphs: list[str]) -> None:
     specials = ["[PAD]", "[UNK]", "[CLS]", "[SEP]", "[MASK]"]
     entries, _ = learn_wordpiece(paragraphs, specials)
     cut = {"direction": "Right", "max_length": 128, "strategy": "LongestFirst", "stride": 0}
-    fill = {"strategy": {"Fixed": 128}, "direction": "Right", "pad_to_multiple_of": None}
-    fill |= {"pad_id": 0, "pad_type_id": 0, "pad_token": "[PAD]"}
+    fill: Json = {"pad_to_multiple_of": None, "pad_id": 0, "pad_type_id": 0, "pad_token": "[PAD]"}
     cleaning = {"clean_text": True, "handle_chinese_chars": True, "strip_accents": None}
-    model = {"type": "WordPiece", "unk_token": "[UNK]", "continuing_subword_prefix": "##"}
-    tokenizer = {
-        "version": "1.0",
+    model: Json = {"type": "WordPiece", "unk_token": "[UNK]", "continuing_subword_prefix": "##"}
+    parts = {
         "truncation": cut,
-        "padding": fill,
-        "added_tokens": added_tokens(entries, specials),
+        "padding": {"strategy": {"Fixed": 128}, "direction": "Right", **fill},
         "normalizer": {"type": "BertNormalizer", **cleaning, "lowercase": True},
         "pre_tokenizer": {"type": "BertPreTokenizer"},
-        "post_processor": template(
-            entries, "[CLS]:0 A:0 [SEP]:0", "[CLS]:0 A:0 [SEP]:0 B:1 [SEP]:1"
-        ),
+        "post_processor": template(entries, "[CLS]:0 A:0 [SEP]:0", "B:1 [SEP]:1"),
         "decoder": {"type": "WordPiece", "prefix": "##", "cleanup": True},
         "model": {**model, "max_input_chars_per_word": 100, "vocab": entries},
     }
-    write_json(folder / "tokenizer.json", tokenizer)
+    write_json(folder / "tokenizer.json", tokenizer_file(entries, specials, parts))
     write_text(folder / "vocab.txt", "".join(f"{entry}\n" for entry in entries))
     settings = {"do_lower_case": True, "model_max_length": 512, "truncation_side": "right"}
     write_json(folder / "tokenizer_config.json", settings)
@@ -199,7 +183,7 @@ def learn_bytelevel(paragraphs: list[str], specials: list[str]) -> Learnt:
     split = (splitter.pre_tokenize_str(paragraph) for paragraph in paragraphs)
     words = Counter(tuple(word) for pieces in split for word, _ in pieces)
     entries = numbered(specials, sorted(ByteLevel.alphabet()))
-    return Learnt(entries, MergeLearner(words, str.__add__).learn(entries, 6000))
+    return entries, MergeLearner(words, str.__add__).learn(entries, 6000)
 
 
 def build_bytelevel(folder: Path, paragraphs: list[str]) -> None:
@@ -208,22 +192,15 @@ def build_bytelevel(folder: Path, paragraphs: list[str]) -> None:
     entries, pairs = learn_bytelevel(paragraphs, specials)
     merges = [f"{left} {right}" for left, right in pairs]
     spaces = {"type": "ByteLevel", "add_prefix_space": False, "trim_offsets": True}
-    model = {"type": "BPE", "dropout": None, "unk_token": None, "continuing_subword_prefix": ""}
-    model |= {"end_of_word_suffix": "", "fuse_unk": False, "byte_fallback": False}
-    tokenizer = {
-        "version": "1.0",
-        "truncation": None,
-        "padding": None,
-        "added_tokens": added_tokens(entries, specials),
-        "normalizer": None,
+    model = {"type": "BPE", "dropout": None, "unk_token": None, "byte_fallback": False}
+    model |= {"ignore_merges": False, "fuse_unk": False}
+    parts = {
         "pre_tokenizer": {**spaces, "use_regex": True},
-        "post_processor": template(
-            entries, "<s>:0 A:0 </s>:0", "<s>:0 A:0 </s>:0 </s>:0 B:0 </s>:0"
-        ),
+        "post_processor": template(entries, "<s>:0 A:0 </s>:0", "</s>:0 B:0 </s>:0"),
         "decoder": {**spaces, "use_regex": True},
-        "model": {**model, "ignore_merges": False, "vocab": entries, "merges": merges},
+        "model": {**model, "vocab": entries, "merges": merges},
     }
-    write_json(folder / "tokenizer.json", tokenizer)
+    write_json(folder / "tokenizer.json", tokenizer_file(entries, specials, parts))
     write_json(folder / "vocab.json", entries)
     write_text(folder / "merges.txt", "\n".join(["#version: 0.2", *merges, ""]))
     settings = {"add_prefix_space": False, "model_max_length": 512, "truncation_side": "right"}
@@ -235,24 +212,18 @@ def build_bytelevel(folder: Path, paragraphs: list[str]) -> None:
 def train_pieces(paragraphs: list[str], **options: Any) -> bytes:  # noqa: ANN401 - the trainer's
     """A SentencePiece model fed from memory, so that it records no path of the machine."""
     model = io.BytesIO()
+    settled: Json = {"num_threads": 1, "shuffle_input_sentence": False, "minloglevel": 2}
+    settled |= {"normalization_rule_name": "identity", "remove_extra_whitespaces": False}
+    settled |= {"byte_fallback": True, **options}
     sentencepiece.SentencePieceTrainer.train(
-        sentence_iterator=iter(paragraphs),
-        model_writer=model,
-        num_threads=1,
-        shuffle_input_sentence=False,
-        normalization_rule_name="identity",
-        remove_extra_whitespaces=False,
-        byte_fallback=True,
-        minloglevel=2,
-        **options,
+        sentence_iterator=iter(paragraphs), model_writer=model, **settled
     )
     return model.getvalue()
 
 
 def learn_unigram(paragraphs: list[str]) -> list[tuple[str, float]]:
     """Pieces and log probabilities (Kudo 2018, arXiv:1804.10959), id order, all byte pieces."""
-    normalizer = NFKC()
-    texts = [normalizer.normalize_str(paragraph) for paragraph in paragraphs]
+    texts = [NFKC().normalize_str(paragraph) for paragraph in paragraphs]
     sizes = {"vocab_size": 5000, "character_coverage": 0.9995}
     ids = {"pad_id": 0, "eos_id": 1, "unk_id": 2, "bos_id": -1}
     model = train_pieces(texts, model_type="unigram", **sizes, **ids)
@@ -265,21 +236,17 @@ def learn_unigram(paragraphs: list[str]) -> list[tuple[str, float]]:
 def build_unigram(folder: Path, paragraphs: list[str]) -> None:
     """Write a Unigram with all byte pieces and no declared limit."""
     vocab = learn_unigram(paragraphs)
-    entries = numbered(piece for piece, _ in vocab)
+    entries, specials = numbered(piece for piece, _ in vocab), ["<pad>", "</s>", "<unk>"]
     spaces = {"type": "Metaspace", "replacement": "▁", "prepend_scheme": "always", "split": True}
     decoders = [{"type": "ByteFallback"}, spaces, {"type": "Fuse"}]
-    tokenizer = {
-        "version": "1.0",
-        "truncation": None,
-        "padding": None,
-        "added_tokens": added_tokens(entries, ["<pad>", "</s>", "<unk>"]),
+    parts = {
         "normalizer": {"type": "NFKC"},
         "pre_tokenizer": spaces,
-        "post_processor": template(entries, "A:0 </s>:0", "A:0 </s>:0 B:0 </s>:0"),
+        "post_processor": template(entries, "A:0 </s>:0", "B:0 </s>:0"),
         "decoder": {"type": "Sequence", "decoders": decoders},
         "model": {"type": "Unigram", "unk_id": 2, "byte_fallback": True, "vocab": vocab},
     }
-    write_json(folder / "tokenizer.json", tokenizer)
+    write_json(folder / "tokenizer.json", tokenizer_file(entries, specials, parts))
     write_json(folder / "tokenizer_config.json", {"model_max_length": NOT_SET})
 
 
@@ -293,8 +260,7 @@ def build_sentencepiece(folder: Path, paragraphs: list[str]) -> None:
 
 def build_all(folder: Path) -> None:
     """Build every vocabulary below `folder`."""
-    lines = TEXT.read_text(encoding="utf-8").split("\n")
-    paragraphs = [line for line in lines if line]
+    paragraphs = [line for line in TEXT.read_text(encoding="utf-8").split("\n") if line]
     build_wordpiece(folder / "harbour-wordpiece", paragraphs)
     build_bytelevel(folder / "harbour-bytelevel", paragraphs)
     build_unigram(folder / "harbour-unigram", paragraphs)

@@ -38,6 +38,7 @@ class ProgressLine:
         self._shown = 0.0
 
     def __call__(self, reached: Reached) -> None:
+        """Show how far the run is, at most five times a second."""
         now = self._clock()
         if now - self._began < SHOWN_AFTER or now - self._shown < _EVERY:
             return

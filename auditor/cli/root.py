@@ -34,10 +34,10 @@ class LazyGroup(click.Group):
         return command
 
 
-def _show_versions(ctx: click.Context, _: click.Parameter, asked: bool) -> None:  # noqa: FBT001 - click's form
+def _show_versions(ctx: click.Context, _: click.Parameter, asked: bool) -> None:
     if not asked or ctx.resilient_parsing:
         return
-    from auditor.report.contract import made_with  # noqa: PLC0415 - slow to import, rarely asked
+    from auditor.report.contract import made_with
 
     for name, version in made_with().items():
         click.echo(f"{name} {version}")
@@ -77,8 +77,8 @@ def _run(arguments: list[str] | None) -> int:
     except AuditError as fault:
         click.echo(_explained(fault), err=True)
         return BAD_INPUT
-    except Exception as fault:  # noqa: BLE001 - the last resort: a fault of ours, told as one
-        import traceback  # noqa: PLC0415
+    except Exception as fault:
+        import traceback
 
         traceback.print_exc()
         click.echo(f"A fault of the tool itself, not of your input: {fault!r}.", err=True)

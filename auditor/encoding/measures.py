@@ -60,7 +60,7 @@ class Reading:
         unknown = self.vocabulary.inventory.unknown
         if unknown is None:
             return np.zeros(len(self.spans.ids), dtype=np.bool_)
-        return (self.spans.ids == unknown) & ~self.control
+        return np.asarray((self.spans.ids == unknown) & ~self.control)
 
     @cached_property
     def inked(self) -> Bools:
@@ -71,7 +71,7 @@ class Reading:
     @cached_property
     def byte_tokens(self) -> Bools:
         """Byte tokens, shape (tokens,)."""
-        return self.vocabulary.inventory.stands_for_bytes[self.spans.ids] & self.inked
+        return np.asarray(self.vocabulary.inventory.stands_for_bytes[self.spans.ids] & self.inked)
 
     @cached_property
     def touches(self) -> Ints:
@@ -87,7 +87,9 @@ class Reading:
         """Return which non-whitespace characters lie in the span of a chosen token."""
         if not tokens.any():
             return np.zeros(len(self.stretch.points), dtype=np.bool_)
-        covered = coverage(self.spans.starts[tokens], self.spans.ends[tokens], len(self.stretch.points))
+        covered = coverage(
+            self.spans.starts[tokens], self.spans.ends[tokens], len(self.stretch.points)
+        )
         return (covered > 0) & self.stretch.ink
 
     @cached_property
@@ -137,7 +139,9 @@ def token_columns(reading: Reading, limit_room: int | None) -> Columns:
         "byte_tokens": _sums(reading.byte_tokens, bounds),
         "whitespace_tokens": _sums((spans.ends > spans.starts) & ~reading.inked, bounds),
         "control_strings": _sums(reading.control, bounds),
-        "truncated_tokens": np.maximum(0, tokens - limit_room) if limit_room is not None else 0 * tokens,
+        "truncated_tokens": np.maximum(0, tokens - limit_room)
+        if limit_room is not None
+        else 0 * tokens,
     }
     for flag, counted in _FLAGS.items():
         columns[flag] = (columns[counted] > 0).astype(np.int64)
@@ -175,7 +179,9 @@ def character_columns(reading: Reading) -> Columns:
     """Return the columns of characters, each of shape (documents,)."""
     return {
         "unknown_characters": reading.stretch.sum_per_document(reading.unknown_characters),
-        "byte_spelled_characters": reading.stretch.sum_per_document(reading.byte_spelled_characters),
+        "byte_spelled_characters": reading.stretch.sum_per_document(
+            reading.byte_spelled_characters
+        ),
         "dropped_characters": reading.stretch.sum_per_document(reading.dropped_characters),
     }
 
@@ -196,5 +202,3 @@ def _sums(values: Ints | Bools, bounds: Ints) -> Ints:
     before = np.zeros(len(values) + 1, dtype=np.int64)
     np.cumsum(values, out=before[1:])
     return before[bounds[1:]] - before[bounds[:-1]]
-
-

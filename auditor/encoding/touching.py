@@ -38,7 +38,7 @@ class SpanIndex:
 
 
 def tokens_within(spans: Spans, starts: Ints, ends: Ints) -> Ints:
-    """Return how many non-empty spans lie wholly in each of the disjoint ranges, shape (ranges,)."""
+    """Return how many non-empty spans lie wholly in each of the disjoint ranges."""
     if not len(starts):
         return np.zeros(0, dtype=np.int64)
     order = np.argsort(starts, kind="stable")

@@ -80,7 +80,9 @@ class WholeDocuments:
             **lossless_column(reading),
         }
         lost = list(_lost_characters(reading))
-        return Measured(columns, spans.ids, self._run_table(reading, runs), self._broken.find(reading), lost)
+        return Measured(
+            columns, spans.ids, self._run_table(reading, runs), self._broken.find(reading), lost
+        )
 
     def _run_table(self, reading: Reading, runs: Runs) -> RunTable:
         probed = [self._fates.of(form) for form in runs.forms]
@@ -114,7 +116,11 @@ def _lost_characters(reading: Reading) -> Iterator[LostCharacter]:
 
 def _by_character(stretch: Stretch, flagged: Bools, fate: str) -> Iterator[LostCharacter]:
     places = np.flatnonzero(flagged)
-    points, firsts, counts = np.unique(stretch.points[places], return_index=True, return_counts=True)
+    points, firsts, counts = np.unique(
+        stretch.points[places], return_index=True, return_counts=True
+    )
     documents = stretch.document_of(places[firsts])
-    for point, document, count in zip(points.tolist(), documents.tolist(), counts.tolist(), strict=True):
+    for point, document, count in zip(
+        points.tolist(), documents.tolist(), counts.tolist(), strict=True
+    ):
         yield LostCharacter(chr(point), fate, count, document)

@@ -1,4 +1,4 @@
-"""Intervals at 95 %: the value is exact for the corpus; the interval speaks of further documents."""
+"""Intervals at 95 %: values are exact for the corpus, intervals speak of further documents."""
 
 from __future__ import annotations
 
@@ -59,7 +59,7 @@ def quantile_ranks(n: int, p: float) -> tuple[int | None, int | None]:
     tail = (1 - CONFIDENCE) / 2
     first, cdf = _binomial_cdf(n, p)
     below = int(np.searchsorted(cdf, tail, side="right"))
-    low = first + below if below else (first if first else None)
+    low = first + below if below else (first or None)
     reached = int(np.searchsorted(cdf, 1 - tail, side="left"))
     high = first + reached + 1
     return low, high if high <= n else None

@@ -7,7 +7,13 @@ from typing import Any
 
 from auditor.figures.intervals import quantile_ranks
 
-QUANTILES = {"p50": (50, 100), "p90": (90, 100), "p95": (95, 100), "p99": (99, 100), "p99_9": (999, 1000)}
+QUANTILES = {
+    "p50": (50, 100),
+    "p90": (90, 100),
+    "p95": (95, 100),
+    "p99": (99, 100),
+    "p99_9": (999, 1000),
+}
 
 Histogram = list[tuple[int, int]]
 
@@ -24,7 +30,9 @@ def describe(histogram: Histogram) -> dict[str, Any]:
         "minimum": histogram[0][0],
         "mean": total / documents,
         "maximum": histogram[-1][0],
-        "quantiles": {name: _quantile(histogram, documents, share) for name, share in QUANTILES.items()},
+        "quantiles": {
+            name: _quantile(histogram, documents, share) for name, share in QUANTILES.items()
+        },
         "histogram": [list(pair) for pair in histogram],
     }
 

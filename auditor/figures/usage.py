@@ -25,13 +25,19 @@ def describe(occurrences: Ints, entries: int, rankable: npt.NDArray[np.bool_]) -
     return {
         "used_entries": share.as_json(),
         "entropy": _number(entropy(occurrences), "no tokens"),
-        "renyi_efficiency": _number(renyi_efficiency(occurrences, entries), "no tokens, or one entry"),
+        "renyi_efficiency": _number(
+            renyi_efficiency(occurrences, entries), "no tokens, or one entry"
+        ),
         "rank_95_frequency": _number(rank_95_frequency(occurrences, rankable), "no such entry"),
     }
 
 
 def _number(value: float | None, reason: str) -> dict[str, Any]:
-    return undefined(reason).as_json() if value is None else Value(value, None, None, None, None).as_json()
+    return (
+        undefined(reason).as_json()
+        if value is None
+        else Value(value, None, None, None, None).as_json()
+    )
 
 
 def entropy(occurrences: Ints) -> float | None:

@@ -23,7 +23,7 @@ def dump(document: Json) -> bytes:
 
 def made_with() -> Json:
     """Return the versions that a figure depends on."""
-    from icu4py import icu_version  # noqa: PLC0415 - only when an audit is written
+    from icu4py import icu_version
 
     versions: Json = {"auditor": importlib.metadata.version("subword-auditor")}
     versions.update({name: importlib.metadata.version(name) for name in _LIBRARIES})

@@ -1,13 +1,12 @@
-"""The tables beside `audit.json`, as CSV text."""
+"""The tables beside `audit.json`, as data frames, and their CSV form."""
 
 from __future__ import annotations
 
-import csv
 import heapq
-import io
 from collections.abc import Iterable, Iterator, Sequence
 from typing import Any
 
+import pandas as pd
 import regex
 
 from auditor.tallies.characters import CharactersTally
@@ -18,7 +17,17 @@ Json = dict[str, Any]
 Row = Sequence[object]
 
 WORST = 1000
-FIGURE_COLUMNS = ("vocabulary", "slice", "figure", "value", "low", "high", "numerator", "denominator", "note")
+FIGURE_COLUMNS = (
+    "vocabulary",
+    "slice",
+    "figure",
+    "value",
+    "low",
+    "high",
+    "numerator",
+    "denominator",
+    "note",
+)
 WORD_COLUMNS = ("vocabulary", "word", "count", "pieces", "extra_tokens", "broken", "unknown")
 CHARACTER_COLUMNS = (
     "vocabulary", "character", "code_point", "name", "script", "count", "fate",
@@ -26,28 +35,34 @@ CHARACTER_COLUMNS = (
 )  # fmt: skip
 
 
-def as_csv(columns: Sequence[str], rows: Iterable[Row]) -> str:
+def frame(columns: Sequence[str], rows: Iterable[Row]) -> pd.DataFrame:
+    """Return a data frame of Python values: integers stay integers beside what is absent."""
+    return pd.DataFrame(list(rows), columns=list(columns), dtype=object)
+
+
+def as_csv(table: pd.DataFrame) -> str:
     """Return a CSV text with a header; an absent value is an empty cell."""
-    text = io.StringIO()
-    writer = csv.writer(text, lineterminator="\n")
-    writer.writerow(columns)
-    writer.writerows(rows)
-    return text.getvalue()
+    return str(table.to_csv(index=False, lineterminator="\n"))
 
 
-def figures(audit: Json) -> str:
+def figures(audit: Json) -> pd.DataFrame:
     """Return one row a vocabulary, slice and figure."""
-    return as_csv(FIGURE_COLUMNS, _figure_rows(audit))
+    return frame(FIGURE_COLUMNS, _figure_rows(audit))
 
 
 def _figure_rows(audit: Json) -> Iterator[Row]:
     for vocabulary in audit["vocabularies"]:
         for key, found in vocabulary["slices"].items():
             for name, figure in found["figures"].items():
-                yield vocabulary["name"], key, name, *(figure[column] for column in FIGURE_COLUMNS[3:])
+                yield (
+                    vocabulary["name"],
+                    key,
+                    name,
+                    *(figure[column] for column in FIGURE_COLUMNS[3:]),
+                )
 
 
-def lengths(audit: Json) -> str:
+def lengths(audit: Json) -> pd.DataFrame:
     """Return the exact histogram: one row a vocabulary, slice and length."""
     rows = (
         (vocabulary["name"], key, length, documents)
@@ -55,7 +70,7 @@ def lengths(audit: Json) -> str:
         for key, found in vocabulary["slices"].items()
         for length, documents in found["lengths"]["histogram"]
     )
-    return as_csv(("vocabulary", "slice", "length", "documents"), rows)
+    return frame(("vocabulary", "slice", "length", "documents"), rows)
 
 
 def worst_words(tally: WordsTally) -> list[tuple[BrokenWord, int]]:
@@ -73,37 +88,50 @@ def _extra(row: BrokenWord, count: int) -> int:
     return count * (row.pieces - 1)
 
 
-def words(named: Iterable[tuple[str, list[tuple[BrokenWord, int]]]]) -> str:
+def words(named: Iterable[tuple[str, list[tuple[BrokenWord, int]]]]) -> pd.DataFrame:
     """Return the worst words of each vocabulary, given as (vocabulary, words)."""
     rows = (
         (name, row.word, count, row.pieces, _extra(row, count), row.broken, bool(row.unknown))
         for name, worst in named
         for row, count in worst
     )
-    return as_csv(WORD_COLUMNS, rows)
+    return frame(WORD_COLUMNS, rows)
 
 
-def characters(named: Iterable[tuple[str, CharactersTally]], sources: list[str]) -> str:
+def characters(named: Iterable[tuple[str, CharactersTally]], sources: list[str]) -> pd.DataFrame:
     """Return every character that did not come through whole, most frequent first."""
-    return as_csv(CHARACTER_COLUMNS, _character_rows(named, sources))
+    return frame(CHARACTER_COLUMNS, _character_rows(named, sources))
 
 
-def _character_rows(named: Iterable[tuple[str, CharactersTally]], sources: list[str]) -> Iterator[Row]:
+def _character_rows(
+    named: Iterable[tuple[str, CharactersTally]], sources: list[str]
+) -> Iterator[Row]:
     for name, tally in named:
-        ordered = sorted(tally.seen.items(), key=lambda item: (-item[1].count, item[0]))
+        ordered = sorted(tally.seen.items(), key=lambda item: (-item[1].times, item[0]))
         for (character, fate), seen in ordered:
             first = sources[seen.first.source], seen.first.line
             code = f"U+{ord(character):04X}"
-            yield name, character, code, character_name(character), script(character), seen.count, fate, *first
+            yield (
+                name,
+                character,
+                code,
+                character_name(character),
+                script(character),
+                seen.times,
+                fate,
+                *first,
+            )
 
 
 def character_name(character: str) -> str:
     """Return the Unicode name of a character, empty where it has none."""
-    import unicodedata  # noqa: PLC0415 - `regex` knows properties but no names
+    import unicodedata
 
     return unicodedata.name(character, "")
 
 
 def printable(text: str) -> str:
     """Return ``text`` with control, format and unassigned characters written as code points."""
-    return str(regex.sub(r"[\p{C}--\p{Co}]", lambda m: f"⟨U+{ord(m[0]):04X}⟩", text, flags=regex.V1))
+    return str(
+        regex.sub(r"[\p{C}--\p{Co}]", lambda m: f"⟨U+{ord(m[0]):04X}⟩", text, flags=regex.V1)
+    )

@@ -68,7 +68,12 @@ def _flaws(tally: FlawsTally, sources: list[str]) -> Json:
 
 
 def _vocabulary(
-    facts: VocabularyFacts, tally: VocabularyTallies, tallies: AuditTallies, plan: Plan, *, relative: bool
+    facts: VocabularyFacts,
+    tally: VocabularyTallies,
+    tallies: AuditTallies,
+    plan: Plan,
+    *,
+    relative: bool,
 ) -> Json:
     lacks = facts.lacks | (frozenset() if plan.repeats else frozenset({"repeats"}))
     basis = Basis(tally.moments, tally.origins or tally.moments, lacks)
@@ -77,7 +82,9 @@ def _vocabulary(
         for key in (ALL, *(key for key in tally.moments.slices() if key != ALL))
     }
     if plan.repeats:
-        repeated = values.proportion(tallies.documents - len(tallies.digest.seen), tallies.documents)
+        repeated = values.proportion(
+            tallies.documents - len(tallies.digest.seen), tallies.documents
+        )
         slices[ALL]["figures"][REPEATED_DOCUMENTS.name] = repeated.as_json()
     slices[ALL]["usage"] = usage.describe(tally.usage.occurrences, facts.entries, facts.rankable)
     return {**_facts(facts), "slices": slices}
@@ -106,7 +113,9 @@ def _facts(facts: VocabularyFacts) -> Json:
     }
 
 
-def _slice(key: str, tally: VocabularyTallies, basis: Basis, *, graphemes: bool, relative: bool) -> Json:
+def _slice(
+    key: str, tally: VocabularyTallies, basis: Basis, *, graphemes: bool, relative: bool
+) -> Json:
     names = (*_COUNTS, "graphemes") if graphemes else _COUNTS
     return {
         "counts": {name: tally.moments.total(key, name) for name in names},

@@ -104,7 +104,9 @@ def _named_apart(facts: list[VocabularyFacts]) -> list[VocabularyFacts]:
     """Return the facts, those that share a name renamed to what the user wrote."""
     names = [own.name for own in facts]
     apart = [own if names.count(own.name) == 1 else replace(own, name=own.source) for own in facts]
-    repeated = next((own.name for own in apart if [o.name for o in apart].count(own.name) > 1), None)
+    repeated = next(
+        (own.name for own in apart if [o.name for o in apart].count(own.name) > 1), None
+    )
     if repeated is not None:
         raise SettingsError("one vocabulary is named twice.", hint="Name it once.", where=repeated)
     return apart
@@ -161,7 +163,9 @@ def _refuse_empty(tallies: AuditTallies, names: list[str]) -> None:
         f"no document to measure; {aside} records were set aside."
         if aside
         else "no document to measure: the corpus is empty.",
-        hint=f"Most frequent reason: {tallies.set_aside.reasons.most_common(1)[0][0]}." if aside else None,
+        hint=f"Most frequent reason: {tallies.set_aside.reasons.most_common(1)[0][0]}."
+        if aside
+        else None,
         where=", ".join(names[:3]),
     )
 
@@ -185,10 +189,10 @@ def _write(
         (own.name, tally.characters) for own, tally in zip(facts, tallies.vocabularies, strict=True)
     ]
     output.write("audit.json", contract.dump(audit))
-    output.write("figures.csv", tables.figures(audit))
-    output.write("lengths.csv", tables.lengths(audit))
-    output.write("words.csv", tables.words(worst))
-    output.write("characters.csv", tables.characters(characters, names))
+    output.write("figures.csv", tables.as_csv(tables.figures(audit)))
+    output.write("lengths.csv", tables.as_csv(tables.lengths(audit)))
+    output.write("words.csv", tables.as_csv(tables.words(worst)))
+    output.write("characters.csv", tables.as_csv(tables.characters(characters, names)))
     output.write("report.html", page.render(audit, worst))
 
 

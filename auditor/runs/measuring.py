@@ -66,11 +66,15 @@ class Measurer:
             return self._measure(batch, source_number)
         except (KeyboardInterrupt, SystemExit, MemoryError, AuditError):
             raise
-        except BaseException:  # noqa: BLE001 - a panic of an engine derives from BaseException
+        except BaseException:
             return self._measure(self._without_failing(batch), source_number)
 
     def _without_failing(self, batch: Batch) -> Batch:
-        faults = {place: fault for place in range(len(batch)) if (fault := self._fault(batch.texts[place]))}
+        faults = {
+            place: fault
+            for place in range(len(batch))
+            if (fault := self._fault(batch.texts[place]))
+        }
         flaws = [
             Flaw(batch.source, batch.lines[place], "the engine fails on it", fault)
             for place, fault in faults.items()
@@ -83,7 +87,7 @@ class Measurer:
                 vocabulary.engine.decode(vocabulary.engine.encode([text]).ids_by_document())
             except (KeyboardInterrupt, SystemExit, MemoryError):
                 raise
-            except BaseException as fault:  # noqa: BLE001
+            except BaseException as fault:
                 return f"{vocabulary.name}: {type(fault).__name__}"
         return None
 
@@ -153,5 +157,3 @@ def _kept(columns: Columns) -> Columns:
 def _place(flaw: Flaw, source_number: int) -> FlawPlace:
     line = -1 if flaw.line is None else flaw.line
     return FlawPlace(source_number, line, flaw.reason, flaw.detail)
-
-

@@ -40,7 +40,9 @@ class OutputFolder:
         if not self.path.exists():
             return
         if not self.path.is_dir():
-            raise OutputError("there is a file of that name.", hint="Name another --out.", where=str(self.path))
+            raise OutputError(
+                "there is a file of that name.", hint="Name another --out.", where=str(self.path)
+            )
         foreign = sorted({entry.name for entry in self.path.iterdir()} - FILES)
         if foreign and not self._overwrite:
             raise OutputError(
@@ -55,14 +57,19 @@ class OutputFolder:
             made = tempfile.mkdtemp(prefix=f".{self.path.name}.", dir=self.path.parent)
         except OSError as fault:
             raise OutputError(
-                f"cannot write there ({fault.strerror}).", hint="Name another --out.", where=str(self.path)
+                f"cannot write there ({fault.strerror}).",
+                hint="Name another --out.",
+                where=str(self.path),
             ) from fault
         self.begun = Path(made)
         self.begun.chmod(0o755)
         return self
 
     def __exit__(
-        self, kind: type[BaseException] | None, value: BaseException | None, trace: TracebackType | None
+        self,
+        kind: type[BaseException] | None,
+        value: BaseException | None,
+        trace: TracebackType | None,
     ) -> None:
         if kind is not None:
             shutil.rmtree(self.begun, ignore_errors=True)
@@ -91,7 +98,9 @@ class DocumentRows:
     def __init__(self, folder: Path, names: list[str], by: tuple[str, ...]) -> None:
         self._names = names
         self._by = by
-        self._table = pq.ParquetWriter(folder / "documents.parquet", self._schema(), compression="zstd")
+        self._table = pq.ParquetWriter(
+            folder / "documents.parquet", self._schema(), compression="zstd"
+        )
         self._flaws = (folder / "set_aside.jsonl").open("wb")
 
     def _schema(self) -> pa.Schema:
@@ -130,7 +139,12 @@ class DocumentRows:
 
     def _write_flaws(self, flaws: Iterable[Flaw]) -> None:
         for flaw in flaws:
-            row = {"source": flaw.source, "line": flaw.line, "reason": flaw.reason, "detail": flaw.detail}
+            row = {
+                "source": flaw.source,
+                "line": flaw.line,
+                "reason": flaw.reason,
+                "detail": flaw.detail,
+            }
             self._flaws.write(orjson.dumps(row, option=orjson.OPT_APPEND_NEWLINE))
 
     def close(self) -> None:

@@ -33,7 +33,9 @@ class VocabularyTallies:
     characters: CharactersTally
 
     @classmethod
-    def empty(cls, *, overhead: int, size: int, graphemes: bool, origins: bool) -> VocabularyTallies:
+    def empty(
+        cls, *, overhead: int, size: int, graphemes: bool, origins: bool
+    ) -> VocabularyTallies:
         """Return empty tallies for a vocabulary of ids below ``size``."""
         columns = (*COLUMNS, "graphemes") if graphemes else COLUMNS
         return cls(

@@ -17,7 +17,7 @@ class Place(NamedTuple):
 class Seen(NamedTuple):
     """Occurrences of a character, and the first place."""
 
-    count: int
+    times: int
     first: Place
 
 
@@ -35,7 +35,7 @@ class CharactersTally(Tally):
         """Add ``count`` occurrences, the first of which stands at ``first``."""
         held = self.seen.get((character, fate))
         if held is not None:
-            count, first = held.count + count, min(held.first, first)
+            count, first = held.times + count, min(held.first, first)
         self.seen[character, fate] = Seen(count, first)
 
     def _add(self, other: CharactersTally) -> None:

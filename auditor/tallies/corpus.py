@@ -44,7 +44,10 @@ class FlawsTally(Tally):
         self.first = sorted([*self.first, *other.first])[:_FIRST]
 
     def counts(self) -> State:
-        return {"reasons": dict(sorted(self.reasons.items())), "first": [list(f) for f in self.first]}
+        return {
+            "reasons": dict(sorted(self.reasons.items())),
+            "first": [list(f) for f in self.first],
+        }
 
     def fill(self, counts: State) -> None:
         self.reasons.update(counts["reasons"])

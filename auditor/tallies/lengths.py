@@ -38,7 +38,9 @@ class LengthsTally(Tally):
             self._documents.setdefault(key, Counter()).update(histogram)
 
     def counts(self) -> State:
-        return {key: [list(pair) for pair in self.histogram(key)] for key in sorted(self._documents)}
+        return {
+            key: [list(pair) for pair in self.histogram(key)] for key in sorted(self._documents)
+        }
 
     def fill(self, counts: State) -> None:
         for key, pairs in counts.items():

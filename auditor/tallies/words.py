@@ -8,13 +8,17 @@ from __future__ import annotations
 
 import heapq
 import tempfile
-from collections.abc import Iterator
+import weakref
+from collections.abc import Iterable, Iterator
 from itertools import groupby
 from typing import IO, NamedTuple
 
 import orjson
 
 from auditor.tallies.base import State, Tally
+
+# Files of one tally: past this number they are merged into one.
+_MOST_FILES = 32
 
 
 class BrokenWord(NamedTuple):
@@ -33,6 +37,7 @@ class WordsTally(Tally):
         self._bound = in_memory
         self._held: dict[BrokenWord, int] = {}
         self._spilled: list[IO[bytes]] = []
+        weakref.finalize(self, _close, self._spilled)
 
     @property
     def settings(self) -> State:
@@ -45,10 +50,12 @@ class WordsTally(Tally):
             self._spill()
 
     def _spill(self) -> None:
-        file = tempfile.TemporaryFile(prefix="auditor-words-")  # noqa: SIM115 - lives with the tally
-        for row, count in sorted(self._held.items()):
-            file.write(orjson.dumps([*row, count]) + b"\n")
-        self._spilled.append(file)
+        if len(self._spilled) < _MOST_FILES:
+            self._spilled.append(_written(sorted(self._held.items())))
+        else:
+            whole = _written(self.rows())
+            _close(self._spilled)
+            self._spilled.append(whole)
         self._held = {}
 
     def rows(self) -> Iterator[tuple[BrokenWord, int]]:
@@ -77,6 +84,19 @@ def _rebuilt(bound: int, counts: State) -> WordsTally:
     tally = WordsTally(bound)
     tally.fill(counts)
     return tally
+
+
+def _written(rows: Iterable[tuple[BrokenWord, int]]) -> IO[bytes]:
+    file = tempfile.TemporaryFile(prefix="auditor-words-")  # noqa: SIM115 - closed with its tally
+    for row, count in rows:
+        file.write(orjson.dumps([*row, count]) + b"\n")
+    return file
+
+
+def _close(files: list[IO[bytes]]) -> None:
+    for file in files:
+        file.close()
+    files.clear()
 
 
 def _read(file: IO[bytes]) -> Iterator[tuple[BrokenWord, int]]:

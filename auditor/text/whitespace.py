@@ -35,7 +35,10 @@ _POSITIONS: tuple[Position, ...] = ("start", "middle", "end")
 _LINE_END = regex.compile(r"\r\n|[\n\r\v\f\x85\u2028\u2029]")
 _INNER_KINDS = (
     ("CRLF", regex.compile(r".*\r\n.*", regex.DOTALL)),
-    ("blank line", regex.compile(rf".*(?:{_LINE_END.pattern}).*(?:{_LINE_END.pattern}).*", regex.S)),
+    (
+        "blank line",
+        regex.compile(rf".*(?:{_LINE_END.pattern}).*(?:{_LINE_END.pattern}).*", regex.S),
+    ),
     ("line end", regex.compile(rf".*(?:{_LINE_END.pattern}).*", regex.DOTALL)),
     ("tab", regex.compile(r".*\t.*", regex.DOTALL)),
     ("space run", regex.compile(r" {2,}")),
@@ -76,7 +79,7 @@ class Runs:
 
 
 def find_runs(stretch: Stretch) -> Runs:
-    """Return the maximal runs of whitespace, then those of zero-width characters, of ``stretch``."""
+    """Return the maximal runs of whitespace of ``stretch``, then those of zero-width characters."""
     zero_width = properties.zero_width_table()[stretch.points]
     found = [runs_of(stretch.whitespace, stretch.bounds), runs_of(zero_width, stretch.bounds)]
     starts = np.concatenate([run[0] for run in found])

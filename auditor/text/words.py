@@ -1,4 +1,4 @@
-"""Words: segments between UAX #29 boundaries that hold a letter or a number (ICU), or plain runs."""
+"""Words: segments between UAX #29 boundaries that hold a letter or number, or plain runs."""
 
 from __future__ import annotations
 

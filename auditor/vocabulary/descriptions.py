@@ -24,7 +24,9 @@ def read_json(path: Path) -> Any:  # noqa: ANN401 - a JSON value
         return orjson.loads(path.read_bytes().removeprefix(b"\xef\xbb\xbf"))
     except orjson.JSONDecodeError as fault:
         raise VocabularyError(
-            f"not valid JSON ({fault}).", hint="The file may be cut short; fetch it again.", where=str(path)
+            f"not valid JSON ({fault}).",
+            hint="The file may be cut short; fetch it again.",
+            where=str(path),
         ) from fault
 
 
@@ -34,7 +36,9 @@ def from_tokenizer_json(path: Path) -> tuple[Description, list[str]]:
     model = data.get("model") if isinstance(data, dict) else None
     if not isinstance(model, dict) or "vocab" not in model:
         raise VocabularyError(
-            "no `model` with a `vocab` in this file.", hint="Is it a tokenizer.json?", where=str(path)
+            "no `model` with a `vocab` in this file.",
+            hint="Is it a tokenizer.json?",
+            where=str(path),
         )
     model.setdefault("type", _guess_type(model))
     if model["type"] not in _FAMILIES:
@@ -129,11 +133,18 @@ def from_vocab_json(path: Path) -> tuple[Description, list[str]]:
         raise VocabularyError("not a JSON object of entries and ids.", where=str(path))
     merges = path.parent / "merges.txt"
     if not merges.is_file():
-        return _words_only(vocab, path), ["no merges.txt beside vocab.json: measured as whole words"]
+        return _words_only(vocab, path), [
+            "no merges.txt beside vocab.json: measured as whole words"
+        ]
     special = [name for name in _USUAL_CONTROL if name in vocab]
     byte_level = sum(c in vocab for c in bytelevel.BYTE_OF_CHARACTER) >= 200
     suffix = "</w>" if not byte_level and any(entry.endswith("</w>") for entry in vocab) else None
-    split = {"type": "ByteLevel", "add_prefix_space": False, "trim_offsets": False, "use_regex": True}
+    split = {
+        "type": "ByteLevel",
+        "add_prefix_space": False,
+        "trim_offsets": False,
+        "use_regex": True,
+    }
     description: Description = {
         "version": "1.0",
         "added_tokens": [_added(vocab[name], name) for name in special],
@@ -145,7 +156,11 @@ def from_vocab_json(path: Path) -> tuple[Description, list[str]]:
             "end_of_word_suffix": suffix,
         },
     }  # fmt: skip
-    kind = "byte-level with the GPT-2 pattern" if byte_level else "character-level, split at whitespace"
+    kind = (
+        "byte-level with the GPT-2 pattern"
+        if byte_level
+        else "character-level, split at whitespace"
+    )
     return description, [f"vocab.json and merges.txt name no rules: read as {kind}, overhead 0"]
 
 

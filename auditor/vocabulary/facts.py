@@ -85,7 +85,7 @@ def _unknown(inventory: Inventory) -> dict[str, Any] | None:
 
 
 def _byte_pieces(inventory: Inventory) -> dict[str, Any]:
-    """Return how single bytes are written (``fallback``, ``byte-level``, ``none``), and the gaps."""
+    """Return how single bytes are written (``fallback``, ``byte-level``, ``none``) and gaps."""
     if inventory.byte_kind == "none":
         return {"kind": "none", "complete": False, "missing": []}
     missing = list(inventory.lacking)

@@ -9,7 +9,9 @@ from typing import Literal
 
 from auditor.errors import VocabularyError
 
-FormKind = Literal["tokenizer.json", "sentencepiece", "vocab.json", "vocab.txt", "ranks", "json ranks"]
+FormKind = Literal[
+    "tokenizer.json", "sentencepiece", "vocab.json", "vocab.txt", "ranks", "json ranks"
+]
 # When a folder holds several forms of one vocabulary, the first of these is measured.
 PRECEDENCE: tuple[FormKind, ...] = (
     "tokenizer.json", "sentencepiece", "vocab.json", "vocab.txt", "ranks", "json ranks",
@@ -53,7 +55,8 @@ def _forms_in(folder: Path, argument: str) -> list[Form]:
         found = ", ".join(path.name for path in names[:12]) or "no file"
         raise VocabularyError(
             f"no vocabulary in this folder: looked for {_LOOKED_FOR}; found {found}.",
-            hint=_code_hint(folder) or "Name the vocabulary's own file, or the folder that holds it.",
+            hint=_code_hint(folder)
+            or "Name the vocabulary's own file, or the folder that holds it.",
             where=argument,
         )
     return sorted(forms, key=lambda form: PRECEDENCE.index(form.kind))
@@ -62,7 +65,9 @@ def _forms_in(folder: Path, argument: str) -> list[Form]:
 def _code_hint(folder: Path) -> str:
     config = folder / "tokenizer_config.json"
     if config.is_file() and b'"auto_map"' in config.read_bytes():
-        return "Its configuration asks for code of its own, which is never run: export tokenizer.json."
+        return (
+            "Its configuration asks for code of its own, which is never run: export tokenizer.json."
+        )
     return ""
 
 

@@ -111,7 +111,9 @@ def _open_description(
 ) -> Callable[[Path, VocabularySpec], _Opened]:
     def opener(path: Path, spec: VocabularySpec) -> _Opened:
         description, notes = read(path)
-        engine = TokenizersEngine(description, control_strings=spec.control_strings, where=str(path))
+        engine = TokenizersEngine(
+            description, control_strings=spec.control_strings, where=str(path)
+        )
         model = description["model"]
         continues = model.get("continuing_subword_prefix") or ""
         return _Opened(
@@ -149,7 +151,9 @@ def _open_ranks(path: Path, spec: VocabularySpec) -> _Opened:
 
 def _open_json_ranks(path: Path, spec: VocabularySpec) -> _Opened:
     ranks, pattern, special = parse_json_ranks(path.read_bytes(), str(path))
-    notes = [] if spec.pattern is None else ["--pattern was not used: the file holds its own pattern"]
+    notes = (
+        [] if spec.pattern is None else ["--pattern was not used: the file holds its own pattern"]
+    )
     engine = RanksEngine(ranks, pattern, special=special, where=str(path))
     return _Opened(engine, engine.inventory(), engine.family, engine.overhead, notes)
 
@@ -172,10 +176,14 @@ def _disagreements(opened: _Opened, forms: list[Form], spec: VocabularySpec) -> 
         try:
             theirs = _open_form(other, replace(spec, limit=None))
         except VocabularyError as fault:
-            notes.append(f"{other.path.name} lies beside {first.path.name} and does not open: {fault.message}")
+            notes.append(
+                f"{other.path.name} lies beside {first.path.name} and does not open: {fault.message}"
+            )
             continue
         differing = _first_difference(opened.engine, theirs.engine)
-        verdict = "encodes the probe texts alike" if differing is None else f"differs on {differing!r}"
+        verdict = (
+            "encodes the probe texts alike" if differing is None else f"differs on {differing!r}"
+        )
         notes.append(f"{first.path.name} is measured; {other.path.name} beside it {verdict}")
     return notes
 
@@ -189,7 +197,12 @@ def _first_difference(ours: Engine, theirs: Engine) -> str | None:
 def _name_of(argument: str, path: Path) -> str:
     if argument.startswith("hub:"):
         return argument.removeprefix("hub:")
-    if path.is_dir() or path.name not in {"tokenizer.json", "vocab.txt", "vocab.json", "tokenizer.model"}:
+    if path.is_dir() or path.name not in {
+        "tokenizer.json",
+        "vocab.txt",
+        "vocab.json",
+        "tokenizer.model",
+    }:
         return path.resolve().name
     return path.resolve().parent.name
 

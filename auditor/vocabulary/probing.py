@@ -12,7 +12,12 @@ from auditor.vocabulary.engine import Engine, Inventory
 from auditor.vocabulary.spans import Spans, correct
 
 SpaceConvention = Literal[
-    "leading marker", "trailing marker", "word-end marker", "continuation prefix", "own token", "dropped"
+    "leading marker",
+    "trailing marker",
+    "word-end marker",
+    "continuation prefix",
+    "own token",
+    "dropped",
 ]
 
 _LETTERS = regex.compile(r"\p{L}{2,12}")

@@ -88,7 +88,9 @@ class RanksEngine:
             entries=entries,
             entry_bytes=spelled,
             marker=bytelevel.SPACE,
-            marker_only=flags(size, [r for entry, r in self._ranks.items() if not entry.strip(b" ")]),
+            marker_only=flags(
+                size, [r for entry, r in self._ranks.items() if not entry.strip(b" ")]
+            ),
             stands_for_bytes=flags(size, partial),
             control=flags(size, list(self._special.values())),
             unknown=None,

@@ -10,7 +10,7 @@ import sentencepiece
 from sentencepiece import sentencepiece_model_pb2
 
 from auditor.errors import VocabularyError
-from auditor.vocabulary.engine import Encoding, Inventory, Ints, bounds_of, flags
+from auditor.vocabulary.engine import Encoding, Ints, Inventory, bounds_of, flags
 
 METASPACE = "\u2581"
 _BYTE_PIECE = regex.compile(r"<0x[0-9A-F]{2}>")
@@ -54,8 +54,13 @@ class SentencePieceEngine:
         protos = self._library.encode(texts, return_type="proto")
         bounds = bounds_of([len(proto.pieces) for proto in protos])
         triples = ((p.id, p.begin, p.end) for proto in protos for p in proto.pieces)
-        flat = np.fromiter(chain.from_iterable(triples), np.int64, 3 * int(bounds[-1])).reshape(-1, 3)
-        starts, ends = _bytes_to_points(texts, flat[:, 1], bounds), _bytes_to_points(texts, flat[:, 2], bounds)
+        flat = np.fromiter(chain.from_iterable(triples), np.int64, 3 * int(bounds[-1])).reshape(
+            -1, 3
+        )
+        starts, ends = (
+            _bytes_to_points(texts, flat[:, 1], bounds),
+            _bytes_to_points(texts, flat[:, 2], bounds),
+        )
         return Encoding(flat[:, 0], starts, ends, bounds)
 
     def decode(self, ids: list[list[int]]) -> list[str]:
@@ -77,7 +82,9 @@ class SentencePieceEngine:
             entries=entries,
             entry_bytes=None,
             marker=METASPACE,
-            marker_only=flags(size, [i for i, e in enumerate(entries) if e and not e.strip(METASPACE)]),
+            marker_only=flags(
+                size, [i for i, e in enumerate(entries) if e and not e.strip(METASPACE)]
+            ),
             stands_for_bytes=flags(size, byte_ids),
             control=flags(size, [i for i, piece in enumerate(pieces) if piece.type == _CONTROL]),
             unknown=unknown,

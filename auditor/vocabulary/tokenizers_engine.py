@@ -73,7 +73,9 @@ class TokenizersEngine:
             entries[number] = entry
         added = self.description.get("added_tokens") or []
         literal = {by_entry[token["content"]] for token in added if token["content"] in by_entry}
-        control = [by_entry[t["content"]] for t in added if t["special"] and t["content"] in by_entry]
+        control = [
+            by_entry[t["content"]] for t in added if t["special"] and t["content"] in by_entry
+        ]
         spelled = _spelled_bytes(entries, literal) if self._is_byte_level() else None
         unknown = self._unknown(by_entry)
         marker = bytelevel.SPACE if spelled is not None else METASPACE
@@ -81,7 +83,9 @@ class TokenizersEngine:
             entries=entries,
             entry_bytes=spelled,
             marker=marker,
-            marker_only=flags(size, [i for i, e in enumerate(entries) if e and not e.strip(marker)]),
+            marker_only=flags(
+                size, [i for i, e in enumerate(entries) if e and not e.strip(marker)]
+            ),
             stands_for_bytes=flags(size, self._byte_ids(entries, spelled)),
             control=flags(size, control),
             unknown=unknown,
@@ -91,7 +95,10 @@ class TokenizersEngine:
         )
 
     def _is_byte_level(self) -> bool:
-        steps = [*steps_of(self.description, "pre_tokenizer"), *steps_of(self.description, "normalizer")]
+        steps = [
+            *steps_of(self.description, "pre_tokenizer"),
+            *steps_of(self.description, "normalizer"),
+        ]
         return any(step["type"] == "ByteLevel" for step in steps)
 
     def _byte_kind(self) -> str:
@@ -101,7 +108,9 @@ class TokenizersEngine:
 
     def _byte_ids(self, entries: list[str | None], spelled: list[bytes | None] | None) -> list[int]:
         if spelled is not None:
-            return [i for i, b in enumerate(spelled) if b is not None and not bytelevel.is_whole_text(b)]
+            return [
+                i for i, b in enumerate(spelled) if b is not None and not bytelevel.is_whole_text(b)
+            ]
         if self._byte_kind() == "none":
             return []
         return [i for i, entry in enumerate(entries) if entry and _BYTE_PIECE.fullmatch(entry)]
@@ -133,7 +142,10 @@ def _for_measuring(description: dict[str, Any]) -> dict[str, Any]:
     changed["model"] = dict(description["model"])
     if changed["model"].get("dropout") is not None:
         changed["model"]["dropout"] = None
-    steps = [{**s, **({"cleanup": False} if "cleanup" in s else {})} for s in steps_of(description, "decoder")]
+    steps = [
+        {**s, **({"cleanup": False} if "cleanup" in s else {})}
+        for s in steps_of(description, "decoder")
+    ]
     changed["decoder"] = _rejoined(steps, "decoders")
     return changed
 
@@ -173,4 +185,6 @@ def _spelled_bytes(entries: list[str | None], literal: set[int]) -> list[bytes |
 
 
 def _lacking(by_entry: dict[str, int]) -> tuple[int, ...]:
-    return tuple(b for b, character in bytelevel.CHARACTER_OF_BYTE.items() if character not in by_entry)
+    return tuple(
+        b for b, character in bytelevel.CHARACTER_OF_BYTE.items() if character not in by_entry
+    )
