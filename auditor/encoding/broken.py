@@ -2,18 +2,31 @@
 
 from __future__ import annotations
 
-from collections import Counter
+from collections.abc import Iterator
+from dataclasses import dataclass
 
 import numpy as np
 
 from auditor.encoding.measures import Reading
 from auditor.tallies.words import BrokenWord
-from auditor.vocabulary.engine import Inventory
+from auditor.vocabulary.engine import Ints, Inventory
 
 _DOT = "·"
 _REMEMBERED = 200_000
 # A word as long as this is shown by its beginning; its count stays with the whole word's pieces.
 LONGEST_SHOWN = 120
+
+
+@dataclass(frozen=True, slots=True)
+class Broken:
+    """The broken words of a stretch.
+
+    ``rows`` are distinct; ``row_of`` and ``document_of`` have one item an occurrence.
+    """
+
+    rows: list[BrokenWord]
+    row_of: Ints
+    document_of: Ints
 
 
 class BrokenWords:
@@ -23,29 +36,35 @@ class BrokenWords:
         self._inventory = inventory
         self._known: dict[tuple[str, bytes], BrokenWord] = {}
 
-    def find(self, reading: Reading) -> Counter[BrokenWord]:
-        """Return the occurrences of each broken word."""
+    def find(self, reading: Reading) -> Broken:
+        """Return the broken words of ``reading``, in order."""
+        words = reading.stretch.words
+        hit = np.flatnonzero((reading.touches >= 2) | (reading.unknown_touches > 0))
+        numbers: dict[BrokenWord, int] = {}
+        row_of = [numbers.setdefault(row, len(numbers)) for row in self._rows(reading, hit)]
+        documents = reading.stretch.document_of(words.starts[hit])
+        return Broken(list(numbers), np.array(row_of, dtype=np.int64), documents)
+
+    def _rows(self, reading: Reading, hit: Ints) -> Iterator[BrokenWord]:
         spans, words = reading.spans, reading.stretch.words
         held = np.flatnonzero(spans.ends > spans.starts)
         held = held[np.argsort(spans.starts[held], kind="stable")]
-        starts, ends = spans.starts[held], np.maximum.accumulate(spans.ends[held])
-        hit = np.flatnonzero((reading.touches >= 2) | (reading.unknown_touches > 0))
-        firsts = np.searchsorted(ends, words.starts[hit], side="right").tolist()
-        stops = np.searchsorted(starts, words.ends[hit], side="left").tolist()
+        ids, starts, ends = spans.ids[held], spans.starts[held], spans.ends[held]
+        firsts = np.searchsorted(np.maximum.accumulate(ends), words.starts[hit], side="right")
+        stops = np.searchsorted(starts, words.ends[hit], side="left")
         lost = (reading.unknown_touches[hit] > 0).tolist()
-        ids, shown = spans.ids[held], Counter[BrokenWord]()
-        for place, first, stop, unknown in zip(hit.tolist(), firsts, stops, lost, strict=True):
+        quads = zip(hit.tolist(), firsts.tolist(), stops.tolist(), lost, strict=True)
+        for place, first, stop, unknown in quads:
             key = (reading.stretch.word_texts[place], ids[first:stop].tobytes())
             row = self._known.get(key)
             if row is None:
-                begin = int(words.starts[place])
+                shift = int(words.starts[place])
+                triples = zip(ids[first:stop], starts[first:stop], ends[first:stop], strict=True)
                 parts = [
-                    (int(ids[t]), int(starts[t]) - begin, int(spans.ends[held[t]]) - begin)
-                    for t in range(first, stop)
+                    (int(i), int(start) - shift, int(end) - shift) for i, start, end in triples
                 ]
                 row = self._remember(key, parts, unknown=unknown)
-            shown[row] += 1
-        return shown
+            yield row
 
     def _remember(
         self, key: tuple[str, bytes], parts: list[tuple[int, int, int]], *, unknown: bool

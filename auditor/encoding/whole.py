@@ -2,14 +2,12 @@
 
 from __future__ import annotations
 
-from collections import Counter
-from collections.abc import Iterator
 from dataclasses import dataclass
 
 import numpy as np
 
 from auditor.encoding.alterations import Alterations
-from auditor.encoding.broken import BrokenWords
+from auditor.encoding.broken import Broken, BrokenWords
 from auditor.encoding.fates import FATES, Fates
 from auditor.encoding.measures import (
     Columns,
@@ -20,7 +18,7 @@ from auditor.encoding.measures import (
     word_columns,
 )
 from auditor.encoding.touching import tokens_within
-from auditor.tallies.words import BrokenWord
+from auditor.text.properties import CODE_POINTS
 from auditor.text.stretch import Stretch
 from auditor.text.whitespace import KINDS, Runs
 from auditor.vocabulary.engine import Bools, Ints
@@ -38,13 +36,16 @@ class RunTable:
 
 
 @dataclass(frozen=True, slots=True)
-class LostCharacter:
-    """A character that did not come through whole, its fate, count, and its first document."""
+class LostCharacters:
+    """Characters that did not come through whole, with one fate; arrays of shape (rows,).
 
-    character: str
+    A row is a code point in a document, and how often it met this fate there.
+    """
+
     fate: str
-    count: int
-    document: int
+    points: Ints
+    documents: Ints
+    counts: Ints
 
 
 @dataclass(frozen=True, slots=True)
@@ -53,9 +54,10 @@ class Measured:
 
     columns: Columns
     ids: Ints
+    bounds: Ints
     runs: RunTable
-    broken: Counter[BrokenWord]
-    lost: list[LostCharacter]
+    broken: Broken
+    lost: list[LostCharacters]
 
 
 class WholeDocuments:
@@ -79,9 +81,13 @@ class WholeDocuments:
             **character_columns(reading),
             **lossless_column(reading),
         }
-        lost = list(_lost_characters(reading))
         return Measured(
-            columns, spans.ids, self._run_table(reading, runs), self._broken.find(reading), lost
+            columns,
+            spans.ids,
+            spans.bounds,
+            self._run_table(reading, runs),
+            self._broken.find(reading),
+            _lost_characters(reading),
         )
 
     def _run_table(self, reading: Reading, runs: Runs) -> RunTable:
@@ -104,23 +110,18 @@ def _tokens_in_runs(reading: Reading, runs: Runs) -> Ints:
     return tokens_within(reading.spans, runs.starts, runs.ends)
 
 
-def _lost_characters(reading: Reading) -> Iterator[LostCharacter]:
+def _lost_characters(reading: Reading) -> list[LostCharacters]:
     fates = {
         "unknown": reading.unknown_characters,
         "byte-spelled": reading.byte_spelled_characters,
         "dropped": reading.dropped_characters,
     }
-    for fate, flagged in fates.items():
-        yield from _by_character(reading.stretch, flagged, fate)
+    return [_by_character(reading.stretch, flagged, fate) for fate, flagged in fates.items()]
 
 
-def _by_character(stretch: Stretch, flagged: Bools, fate: str) -> Iterator[LostCharacter]:
+def _by_character(stretch: Stretch, flagged: Bools, fate: str) -> LostCharacters:
     places = np.flatnonzero(flagged)
-    points, firsts, counts = np.unique(
-        stretch.points[places], return_index=True, return_counts=True
-    )
-    documents = stretch.document_of(places[firsts])
-    for point, document, count in zip(
-        points.tolist(), documents.tolist(), counts.tolist(), strict=True
-    ):
-        yield LostCharacter(chr(point), fate, count, document)
+    codes = stretch.document_of(places) * CODE_POINTS + stretch.points[places]
+    distinct, counts = np.unique(codes, return_counts=True)
+    documents, points = np.divmod(distinct, CODE_POINTS)
+    return LostCharacters(fate, points, documents, counts.astype(np.int64))

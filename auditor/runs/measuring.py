@@ -105,9 +105,10 @@ class Measurer:
         rows = reference([found.columns for found in measured])
         groups = groupings(len(batch), batch.slices)
         places = [Place(source_number, line) for line in batch.lines]
-        triples = zip(tallies.vocabularies, rows, measured, strict=True)
-        for tally, own, found in triples:
-            tally.add({**text_rows, **own}, found, groups, batch.origins, places)
+        once = np.ones(len(batch), dtype=np.int64)
+        for tally, own, found in zip(tallies.vocabularies, rows, measured, strict=True):
+            tally.add_documents({**text_rows, **own}, found.runs, groups, batch.origins)
+            tally.add_contents(found, once, places)
         return Outcome(batch, tallies, text_rows, [_kept(own) for own in rows])
 
     def _graphemes(self, texts: list[str]) -> np.ndarray[tuple[int], np.dtype[np.int64]] | None:

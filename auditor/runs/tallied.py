@@ -7,7 +7,7 @@ from dataclasses import dataclass, field
 import numpy as np
 
 from auditor.encoding.measures import Columns
-from auditor.encoding.whole import Measured
+from auditor.encoding.whole import LostCharacters, Measured, RunTable
 from auditor.figures.catalogue import COLUMNS, PAIRS
 from auditor.tallies.characters import CharactersTally, Place
 from auditor.tallies.corpus import DigestTally, FlawsTally
@@ -18,6 +18,7 @@ from auditor.tallies.usage import UsageTally
 from auditor.tallies.whitespace import WhitespaceTally
 from auditor.tallies.words import WordsTally
 from auditor.text.whitespace import KINDS
+from auditor.vocabulary.engine import Ints
 
 
 @dataclass
@@ -48,26 +49,36 @@ class VocabularyTallies:
             CharactersTally(),
         )
 
-    def add(
-        self,
-        columns: Columns,
-        measured: Measured,
-        groups: list[Grouping],
-        origins: list[str] | None,
-        places: list[Place],
+    def add_documents(
+        self, columns: Columns, runs: RunTable, groups: list[Grouping], origins: list[str] | None
     ) -> None:
-        """Add one stretch; ``places`` says where each document stands."""
+        """Add documents: their columns, and the runs of whitespace in them."""
         self.moments.add(columns, groups)
         if self.origins is not None and origins is not None:
             self.origins.add(columns, groups, origins)
         self.lengths.add(columns["tokens"], groups)
-        runs = measured.runs
         self.whitespace.add(runs.kind_of, runs.table, runs.document_of, groups)
-        self.usage.add(measured.ids)
-        for row, count in measured.broken.items():
+
+    def add_contents(self, measured: Measured, weights: Ints, places: list[Place]) -> None:
+        """Add what texts hold: entries used, broken words, lost characters.
+
+        ``weights`` (texts,) says how often each text of ``measured`` occurs and ``places`` where it
+        was first met.
+        """
+        self.usage.add(measured.ids, np.repeat(weights, np.diff(measured.bounds)))
+        broken = measured.broken
+        times = np.zeros(len(broken.rows), dtype=np.int64)
+        np.add.at(times, broken.row_of, weights[broken.document_of])
+        for row, count in zip(broken.rows, times.tolist(), strict=True):
             self.words.add(row, count)
         for lost in measured.lost:
-            self.characters.add(lost.character, lost.fate, lost.count, places[lost.document])
+            self._add_lost(lost, weights, places)
+
+    def _add_lost(self, lost: LostCharacters, weights: Ints, places: list[Place]) -> None:
+        counts = lost.counts * weights[lost.documents]
+        rows = zip(lost.points.tolist(), counts.tolist(), lost.documents.tolist(), strict=True)
+        for point, count, document in rows:
+            self.characters.add(chr(point), lost.fate, count, places[document])
 
     def merge(self, other: VocabularyTallies) -> None:
         """Add the counts of ``other``."""

@@ -21,9 +21,12 @@ class UsageTally(Tally):
     def settings(self) -> State:
         return {"size": self.size}
 
-    def add(self, ids: Ints) -> None:
-        """Add tokens by their id, shape (tokens,)."""
-        self.occurrences += np.bincount(ids, minlength=self.size)
+    def add(self, ids: Ints, weights: Ints | None = None) -> None:
+        """Add tokens by their id, shape (tokens,), each as often as ``weights`` says."""
+        if weights is None:
+            self.occurrences += np.bincount(ids, minlength=self.size)
+        else:
+            np.add.at(self.occurrences, ids, weights)
 
     def _add(self, other: UsageTally) -> None:
         self.occurrences += other.occurrences

@@ -28,6 +28,7 @@ class RanksEngine:
     def __init__(
         self, ranks: dict[bytes, int], pattern: str, *, special: dict[str, int], where: str
     ) -> None:
+        self.pattern = pattern
         self._ranks = ranks
         self._special = special
         lacking = [byte for byte in range(256) if bytes([byte]) not in ranks]

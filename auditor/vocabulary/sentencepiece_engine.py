@@ -28,6 +28,7 @@ class SentencePieceEngine:
     overhead = (0, 0)
 
     def __init__(self, model: bytes, *, where: str) -> None:
+        self._where = where
         self._library = sentencepiece.SentencePieceProcessor()
         try:
             self.proto = sentencepiece_model_pb2.ModelProto.FromString(model)
@@ -38,6 +39,13 @@ class SentencePieceEngine:
                 hint="The file may be damaged or cut short; fetch it again.",
                 where=where,
             ) from fault
+
+    def without_prefix(self) -> SentencePieceEngine:
+        """Return the same model without the space that is added before the first word."""
+        changed = sentencepiece_model_pb2.ModelProto()
+        changed.CopyFrom(self.proto)
+        changed.normalizer_spec.add_dummy_prefix = False
+        return SentencePieceEngine(changed.SerializeToString(), where=self._where)
 
     @property
     def family(self) -> str:

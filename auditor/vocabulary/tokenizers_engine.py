@@ -27,6 +27,8 @@ class TokenizersEngine:
 
     def __init__(self, description: dict[str, Any], *, control_strings: str, where: str) -> None:
         self.description = description
+        self._control_strings = control_strings
+        self._where = where
         self._library = _load(_for_measuring(description), where)
         self.overhead = (
             self._library.num_special_tokens_to_add(False),  # noqa: FBT003 - the library's own order
@@ -35,6 +37,14 @@ class TokenizersEngine:
         self._library.post_processor = None
         self._library.encode_special_tokens = control_strings == "text"
         self._normalizer = _word_normalizer(description, where)
+
+    def with_normalizer(self, step: dict[str, Any]) -> TokenizersEngine:
+        """Return the same vocabulary with ``step`` for its normaliser."""
+        return TokenizersEngine(
+            {**self.description, "normalizer": step},
+            control_strings=self._control_strings,
+            where=self._where,
+        )
 
     @property
     def has_decoder(self) -> bool:
