@@ -10,8 +10,7 @@ import numpy as np
 from auditor.encoding.alterations import CASE_ONLY, MORE_THAN_CASE, Alterations
 from auditor.encoding.touching import SpanIndex
 from auditor.text.stretch import Stretch
-from auditor.vocabulary.engine import Bools, Ints
-from auditor.vocabulary.opening import Vocabulary
+from auditor.vocabulary.engine import Bools, Engine, Ints, Inventory
 from auditor.vocabulary.spans import Spans, coverage
 
 Columns = dict[str, Ints]
@@ -36,13 +35,14 @@ class Reading:
 
     stretch: Stretch
     spans: Spans
-    vocabulary: Vocabulary
+    engine: Engine
+    inventory: Inventory
     parse_control: bool
 
     @cached_property
     def control(self) -> Bools:
         """Tokens that a control string of the text produced, shape (tokens,)."""
-        inventory, ids = self.vocabulary.inventory, self.spans.ids
+        inventory, ids = self.inventory, self.spans.ids
         if not self.parse_control:
             return np.zeros(len(ids), dtype=np.bool_)
         found = inventory.control[ids].copy()
@@ -57,7 +57,7 @@ class Reading:
     @cached_property
     def unknown(self) -> Bools:
         """Tokens with the unknown id that no control string produced, shape (tokens,)."""
-        unknown = self.vocabulary.inventory.unknown
+        unknown = self.inventory.unknown
         if unknown is None:
             return np.zeros(len(self.spans.ids), dtype=np.bool_)
         return np.asarray((self.spans.ids == unknown) & ~self.control)
@@ -71,7 +71,7 @@ class Reading:
     @cached_property
     def byte_tokens(self) -> Bools:
         """Byte tokens, shape (tokens,)."""
-        return np.asarray(self.vocabulary.inventory.stands_for_bytes[self.spans.ids] & self.inked)
+        return np.asarray(self.inventory.stands_for_bytes[self.spans.ids] & self.inked)
 
     @cached_property
     def touches(self) -> Ints:
@@ -107,7 +107,7 @@ class Reading:
         """Non-whitespace characters that nothing stands for, shape (characters,)."""
         every = np.ones(len(self.spans.ids), dtype=np.bool_)
         bare = self.stretch.ink & ~self.characters_under(every)
-        lacking = self.vocabulary.inventory.lacking
+        lacking = self.inventory.lacking
         return bare | self._with_lacking_bytes(lacking) if lacking else bare
 
     def _with_lacking_bytes(self, lacking: tuple[int, ...]) -> Bools:
@@ -124,28 +124,29 @@ class Reading:
 
     def _bytes_over(self, place: int) -> bytes:
         over = np.flatnonzero((self.spans.starts <= place) & (self.spans.ends > place))
-        spelled = self.vocabulary.inventory.entry_bytes or []
+        spelled = self.inventory.entry_bytes or []
         return b"".join(spelled[number] or b"" for number in self.spans.ids[over].tolist())
 
 
-def token_columns(reading: Reading, limit_room: int | None) -> Columns:
-    """Return the columns of tokens, each of shape (documents,); ``limit_room`` in tokens."""
-    bounds = reading.spans.bounds
-    tokens = np.diff(bounds)
-    spans = reading.spans
-    columns = {
-        "tokens": tokens,
+def token_columns(reading: Reading) -> Columns:
+    """Return the columns of tokens, each of shape (documents,)."""
+    spans, bounds = reading.spans, reading.spans.bounds
+    return {
+        "tokens": np.diff(bounds),
         "unknown_tokens": _sums(reading.unknown, bounds),
         "byte_tokens": _sums(reading.byte_tokens, bounds),
         "whitespace_tokens": _sums((spans.ends > spans.starts) & ~reading.inked, bounds),
         "control_strings": _sums(reading.control, bounds),
-        "truncated_tokens": np.maximum(0, tokens - limit_room)
-        if limit_room is not None
-        else 0 * tokens,
     }
-    for flag, counted in _FLAGS.items():
-        columns[flag] = (columns[counted] > 0).astype(np.int64)
-    return columns
+
+
+def derived_columns(columns: Columns, room: int | None) -> Columns:
+    """Return the columns that follow from others of the whole document; ``room`` in tokens."""
+    tokens = columns["tokens"]
+    beyond = 0 * tokens if room is None else np.maximum(0, tokens - room)
+    counted = {**columns, "truncated_tokens": beyond}
+    flags = {flag: (counted[name] > 0).astype(np.int64) for flag, name in _FLAGS.items()}
+    return {"truncated_tokens": beyond, **flags}
 
 
 _FLAGS = {
@@ -161,7 +162,7 @@ def word_columns(reading: Reading, alterations: Alterations) -> Columns:
     stretch, touches = reading.stretch, reading.touches
     known = reading.unknown_touches == 0
     altered = np.zeros(len(stretch.words), dtype=np.int64)
-    if reading.vocabulary.engine.alters:
+    if reading.engine.alters:
         altered = np.array([alterations.of(word) for word in stretch.word_texts], dtype=np.int64)
     edges = np.searchsorted(stretch.words.starts, stretch.bounds)
     return {
@@ -186,14 +187,17 @@ def character_columns(reading: Reading) -> Columns:
     }
 
 
-def lossless_column(reading: Reading) -> Columns:
-    """Return the column of documents that come back exactly; all 0 without a decoder."""
-    engine, texts = reading.vocabulary.engine, reading.stretch.texts
+def lossless_column(reading: Reading, lost_space: str) -> Columns:
+    """Return the column of texts that come back exactly; all 0 without a decoder.
+
+    ``lost_space`` is what decoding leaves out at the start of every text.
+    """
+    engine, texts = reading.engine, reading.stretch.texts
     if not engine.has_decoder:
         return {"lossless_documents": np.zeros(len(texts), dtype=np.int64)}
     flat, bounds = reading.spans.ids.tolist(), reading.spans.bounds.tolist()
     decoded = engine.decode([flat[bounds[i] : bounds[i + 1]] for i in range(len(texts))])
-    same = [ours == theirs for ours, theirs in zip(texts, decoded, strict=True)]
+    same = [text == lost_space + back for text, back in zip(texts, decoded, strict=True)]
     return {"lossless_documents": np.array(same, dtype=np.int64)}
 
 

@@ -1,4 +1,4 @@
-"""Encodes every document whole and measures it: the plain path, and the oracle of any other."""
+"""Encodes texts whole and measures them: the plain path, and the oracle of any other."""
 
 from __future__ import annotations
 
@@ -23,6 +23,7 @@ from auditor.text.stretch import Stretch
 from auditor.text.whitespace import KINDS, Runs
 from auditor.vocabulary.engine import Bools, Ints
 from auditor.vocabulary.opening import Vocabulary
+from auditor.vocabulary.separation import Separation
 from auditor.vocabulary.spans import correct
 
 
@@ -60,26 +61,44 @@ class Measured:
     lost: list[LostCharacters]
 
 
-class WholeDocuments:
-    """Measures stretches under one vocabulary, each document encoded whole."""
+@dataclass(frozen=True, slots=True)
+class Contents:
+    """Measured texts with how often each occurs, and where it was first met; shape (texts,)."""
 
-    def __init__(self, vocabulary: Vocabulary, *, parse_control: bool) -> None:
-        self.vocabulary = vocabulary
+    measured: Measured
+    weights: Ints
+    sources: Ints
+    lines: Ints
+
+
+class WholeTexts:
+    """Measures texts under one vocabulary, each encoded whole.
+
+    ``separation`` is given for texts that are later parts of documents: it names the engine for
+    them, and what decoding leaves out at their start.
+    """
+
+    def __init__(
+        self, vocabulary: Vocabulary, *, parse_control: bool, separation: Separation | None = None
+    ) -> None:
+        self._engine = separation.later if separation else vocabulary.engine
+        self._lost_space = separation.lost_space if separation else ""
+        self._inventory = vocabulary.inventory
         self._parse_control = parse_control
         self._alterations = Alterations(vocabulary.engine.normalize)
         self._fates = Fates(vocabulary)
         self._broken = BrokenWords(vocabulary.inventory)
 
     def measure(self, stretch: Stretch, runs: Runs) -> Measured:
-        """Return the measures of ``stretch``; raises what the engine raises on a document."""
-        encoding = self.vocabulary.engine.encode(stretch.texts)
-        spans = correct(encoding, stretch, self.vocabulary.inventory)
-        reading = Reading(stretch, spans, self.vocabulary, self._parse_control)
+        """Return the measures of ``stretch``; raises what the engine raises on a text."""
+        encoding = self._engine.encode(stretch.texts)
+        spans = correct(encoding, stretch, self._inventory)
+        reading = Reading(stretch, spans, self._engine, self._inventory, self._parse_control)
         columns = {
-            **token_columns(reading, self.vocabulary.room),
+            **token_columns(reading),
             **word_columns(reading, self._alterations),
             **character_columns(reading),
-            **lossless_column(reading),
+            **lossless_column(reading, self._lost_space),
         }
         return Measured(
             columns,
@@ -100,14 +119,10 @@ class WholeDocuments:
             if found.fate is not None:
                 by_form[place, 2 + FATES.index(found.fate)] = 1
         table = by_form[runs.form_of]
-        table[:, 1] = _tokens_in_runs(reading, runs)
+        # Whitespace and zero-width runs are disjoint, so that one look-up serves both.
+        table[:, 1] = tokens_within(reading.spans, runs.starts, runs.ends)
         kind_of = np.array(kinds, dtype=np.int64)[runs.form_of]
         return RunTable(kind_of, table, reading.stretch.document_of(runs.starts))
-
-
-def _tokens_in_runs(reading: Reading, runs: Runs) -> Ints:
-    """Whitespace and zero-width runs are disjoint, so that one look-up serves both."""
-    return tokens_within(reading.spans, runs.starts, runs.ends)
 
 
 def _lost_characters(reading: Reading) -> list[LostCharacters]:

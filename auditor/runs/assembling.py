@@ -10,7 +10,7 @@ from auditor.figures.catalogue import REPEATED_DOCUMENTS, WHY_UNDEFINED
 from auditor.figures.values import Basis
 from auditor.report import contract
 from auditor.runs.plan import Plan
-from auditor.runs.tallied import AuditTallies, VocabularyTallies
+from auditor.runs.tallied import AuditTallies, DocumentTallies
 from auditor.tallies.corpus import FlawsTally
 from auditor.tallies.groups import ALL
 from auditor.tallies.whitespace import COLUMNS
@@ -29,10 +29,9 @@ def assemble(
     settings: Json,
 ) -> Json:
     """Return the document of `audit.json`."""
-    pairs = zip(facts, tallies.vocabularies, strict=True)
     several = len(facts) > 1
     vocabularies = [
-        _vocabulary(own, tally, tallies, plan, relative=several) for own, tally in pairs
+        _vocabulary(own, place, tallies, plan, relative=several) for place, own in enumerate(facts)
     ]
     return contract.audit(
         settings={**plan.numeric_settings(), **settings},
@@ -42,14 +41,14 @@ def assemble(
 
 
 def _corpus(tallies: AuditTallies, sources: list[str]) -> Json:
-    moments = tallies.vocabularies[0].moments
+    moments = tallies.documents[0].moments
     counts = {name: moments.total(ALL, name) for name in _COUNTS if name != "tokens"}
     return {
         "sources": sources,
-        "digest": tallies.digest.digest,
+        "digest": tallies.corpus.digest.digest,
         **counts,
-        "set_aside": _flaws(tallies.set_aside, sources),
-        "mended": _flaws(tallies.mended, sources),
+        "set_aside": _flaws(tallies.corpus.set_aside, sources),
+        "mended": _flaws(tallies.corpus.mended, sources),
     }
 
 
@@ -68,13 +67,9 @@ def _flaws(tally: FlawsTally, sources: list[str]) -> Json:
 
 
 def _vocabulary(
-    facts: VocabularyFacts,
-    tally: VocabularyTallies,
-    tallies: AuditTallies,
-    plan: Plan,
-    *,
-    relative: bool,
+    facts: VocabularyFacts, place: int, tallies: AuditTallies, plan: Plan, *, relative: bool
 ) -> Json:
+    tally, contents = tallies.documents[place], tallies.contents[place]
     lacks = facts.lacks | (frozenset() if plan.repeats else frozenset({"repeats"}))
     basis = Basis(tally.moments, tally.origins or tally.moments, lacks)
     slices = {
@@ -82,11 +77,11 @@ def _vocabulary(
         for key in (ALL, *(key for key in tally.moments.slices() if key != ALL))
     }
     if plan.repeats:
-        repeated = values.proportion(
-            tallies.documents - len(tallies.digest.seen), tallies.documents
-        )
+        distinct = len(tallies.corpus.digest.seen)
+        repeated = values.proportion(tallies.measured - distinct, tallies.measured)
         slices[ALL]["figures"][REPEATED_DOCUMENTS.name] = repeated.as_json()
-    slices[ALL]["usage"] = usage.describe(tally.usage.occurrences, facts.entries, facts.rankable)
+    used = contents.usage.occurrences
+    slices[ALL]["usage"] = usage.describe(used, facts.entries, facts.rankable)
     return {**_facts(facts), "slices": slices}
 
 
@@ -114,7 +109,7 @@ def _facts(facts: VocabularyFacts) -> Json:
 
 
 def _slice(
-    key: str, tally: VocabularyTallies, basis: Basis, *, graphemes: bool, relative: bool
+    key: str, tally: DocumentTallies, basis: Basis, *, graphemes: bool, relative: bool
 ) -> Json:
     names = (*_COUNTS, "graphemes") if graphemes else _COUNTS
     return {

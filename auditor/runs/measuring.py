@@ -7,18 +7,22 @@ from dataclasses import dataclass, replace
 import numpy as np
 
 from auditor.corpus import Batch, Flaw
-from auditor.encoding.measures import Columns, text_columns
-from auditor.encoding.whole import WholeDocuments
+from auditor.encoding.documents import Documents, Tale
+from auditor.encoding.measures import Columns, derived_columns
 from auditor.errors import AuditError
 from auditor.runs.plan import Plan
-from auditor.runs.tallied import AuditTallies, VocabularyTallies, reference
-from auditor.tallies.characters import Place
+from auditor.runs.tallied import (
+    AuditTallies,
+    ContentTallies,
+    CorpusTallies,
+    DocumentTallies,
+    reference,
+)
 from auditor.tallies.corpus import DigestTally, FlawPlace
 from auditor.tallies.groups import groupings
+from auditor.tallies.usage import UsageTally
 from auditor.text.stretch import Stretch
-from auditor.text.whitespace import find_runs
-from auditor.text.words import count_graphemes
-from auditor.vocabulary import Vocabulary, VocabularyFacts, facts_of, open_vocabulary
+from auditor.vocabulary import VocabularyFacts, facts_of, open_vocabulary
 
 # The columns of documents.parquet that every vocabulary adds.
 ROW_COLUMNS = ("tokens", "unknown_tokens", "byte_spelled_characters", "lossless_documents")
@@ -29,9 +33,18 @@ class Outcome:
     """What a batch comes to: its tallies, and a row for each document that was measured."""
 
     batch: Batch
-    tallies: AuditTallies
+    corpus: CorpusTallies
+    documents: list[DocumentTallies]
     text_rows: Columns
     rows: list[Columns]
+
+
+@dataclass
+class Finished:
+    """What a process hands over when all batches are measured."""
+
+    contents: list[ContentTallies]
+    tale: Tale
 
 
 class Measurer:
@@ -40,25 +53,21 @@ class Measurer:
     def __init__(self, plan: Plan) -> None:
         self._plan = plan
         self._vocabularies = [open_vocabulary(spec) for spec in plan.vocabularies]
-        self._facts = [facts_of(vocabulary) for vocabulary in self._vocabularies]
-        self._encoders = [
-            WholeDocuments(vocabulary, parse_control=plan.parse_control)
-            for vocabulary in self._vocabularies
-        ]
+        self.facts = [facts_of(vocabulary) for vocabulary in self._vocabularies]
+        self._contents = [ContentTallies(UsageTally(own.size)) for own in self.facts]
+        self._documents = Documents(
+            self._vocabularies,
+            lambda place, contents: self._contents[place].add(contents),
+            words=plan.words,
+            graphemes=plan.graphemes,
+            parse_control=plan.parse_control,
+            whole=plan.whole,
+        )
 
-    @property
-    def vocabularies(self) -> list[Vocabulary]:
-        """The opened vocabularies."""
-        return self._vocabularies
-
-    @property
-    def facts(self) -> list[VocabularyFacts]:
-        """The facts of each vocabulary."""
-        return self._facts
-
-    def empty(self) -> AuditTallies:
-        """Return empty tallies for this plan."""
-        return empty_tallies(self._plan, self._facts)
+    def finish(self) -> Finished:
+        """Return what texts held and how they were encoded, once all batches are measured."""
+        self._documents.finish()
+        return Finished(self._contents, self._documents.tale)
 
     def measure(self, batch: Batch, source_number: int) -> Outcome:
         """Return the outcome of ``batch``; a document that an engine fails on is set aside."""
@@ -92,44 +101,50 @@ class Measurer:
         return None
 
     def _measure(self, batch: Batch, source_number: int) -> Outcome:
-        stretch = Stretch(batch.texts, words=self._plan.words)
-        tallies = self.empty()
-        tallies.digest.add(batch.texts)
-        tallies.set_aside.add(_place(flaw, source_number) for flaw in batch.set_aside)
-        tallies.mended.add(_place(flaw, source_number) for flaw in batch.mended)
-        text_rows = text_columns(stretch, graphemes=self._graphemes(batch.texts))
+        corpus = _corpus(self._plan, batch, source_number)
         if not batch.texts:
-            return Outcome(batch, tallies, text_rows, [])
-        runs = find_runs(stretch)
-        measured = [encoder.measure(stretch, runs) for encoder in self._encoders]
-        rows = reference([found.columns for found in measured])
+            return Outcome(batch, corpus, [], {}, [])
+        stretch = Stretch(batch.texts, words=self._plan.words)
+        lines = np.array(batch.lines, dtype=np.int64)
+        counted = self._documents.measure(stretch, source_number, lines)
+        rows = reference(
+            [
+                {**own, **derived_columns(own, facts.room)}
+                for own, facts in zip(counted.columns, self.facts, strict=True)
+            ]
+        )
         groups = groupings(len(batch), batch.slices)
-        places = [Place(source_number, line) for line in batch.lines]
-        once = np.ones(len(batch), dtype=np.int64)
-        for tally, own, found in zip(tallies.vocabularies, rows, measured, strict=True):
-            tally.add_documents({**text_rows, **own}, found.runs, groups, batch.origins)
-            tally.add_contents(found, once, places)
-        return Outcome(batch, tallies, text_rows, [_kept(own) for own in rows])
+        documents = empty_documents(self._plan, self.facts)
+        for tally, own, runs in zip(documents, rows, counted.runs, strict=True):
+            tally.add({**counted.text, **own}, runs, groups, batch.origins)
+        return Outcome(batch, corpus, documents, counted.text, [_kept(own) for own in rows])
 
-    def _graphemes(self, texts: list[str]) -> np.ndarray[tuple[int], np.dtype[np.int64]] | None:
-        if not self._plan.graphemes:
-            return None
-        return np.array([count_graphemes(text) for text in texts], dtype=np.int64)
+
+def _corpus(plan: Plan, batch: Batch, source_number: int) -> CorpusTallies:
+    corpus = CorpusTallies(DigestTally(distinct=plan.repeats))
+    corpus.digest.add(batch.texts)
+    corpus.set_aside.add(_place(flaw, source_number) for flaw in batch.set_aside)
+    corpus.mended.add(_place(flaw, source_number) for flaw in batch.mended)
+    return corpus
+
+
+def empty_documents(plan: Plan, facts: list[VocabularyFacts]) -> list[DocumentTallies]:
+    """Return empty tallies of documents for each vocabulary."""
+    clustered = plan.read.origin is not None
+    return [
+        DocumentTallies.empty(
+            overhead=own.overhead[0], graphemes=plan.graphemes, origins=clustered
+        )
+        for own in facts
+    ]
 
 
 def empty_tallies(plan: Plan, facts: list[VocabularyFacts]) -> AuditTallies:
     """Return empty tallies for ``plan`` and the vocabularies it names."""
     return AuditTallies(
-        [
-            VocabularyTallies.empty(
-                overhead=own.overhead[0],
-                size=own.size,
-                graphemes=plan.graphemes,
-                origins=plan.read.origin is not None,
-            )
-            for own in facts
-        ],
-        DigestTally(distinct=plan.repeats),
+        CorpusTallies(DigestTally(distinct=plan.repeats)),
+        empty_documents(plan, facts),
+        [ContentTallies(UsageTally(own.size)) for own in facts],
     )
 
 

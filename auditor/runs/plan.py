@@ -14,7 +14,8 @@ class Plan:
     """The settings of one audit.
 
     ``words`` is ``icu`` or ``whitespace``. ``workers`` is the number of processes, 0 to choose by
-    the corpus's size; it never changes a figure, nor does the batch size in ``read``.
+    the corpus's size; it never changes a figure, nor does the batch size in ``read``. ``whole``
+    encodes every document whole, which changes none either.
     """
 
     corpus: tuple[str, ...]
@@ -25,6 +26,7 @@ class Plan:
     repeats: bool = False
     excerpts: bool = True
     workers: int = 0
+    whole: bool = False
 
     @property
     def parse_control(self) -> bool:
@@ -46,4 +48,5 @@ class Plan:
             "limit": first.limit,
             "graphemes": self.graphemes,
             "repeats": self.repeats,
+            "whole": self.whole,
         }

@@ -3,6 +3,7 @@
 from __future__ import annotations
 
 from functools import cached_property
+from typing import NamedTuple
 
 import numpy as np
 import numpy.typing as npt
@@ -14,15 +15,23 @@ Ints = npt.NDArray[np.int64]
 Bools = npt.NDArray[np.bool_]
 
 
+class Edges(NamedTuple):
+    """For texts that are parts of documents: which begin one and which end one, shape (texts,)."""
+
+    begins: Bools
+    ends: Bools
+
+
 class Stretch:
     """The text of consecutive documents and what is known of it without a vocabulary.
 
     Positions are code points counted from the start of the stretch; document ``i`` holds
-    ``bounds[i]`` up to ``bounds[i + 1]``.
+    ``bounds[i]`` up to ``bounds[i + 1]``. With ``edges`` the texts are parts of documents.
     """
 
-    def __init__(self, texts: list[str], *, words: str = "icu") -> None:
+    def __init__(self, texts: list[str], *, words: str = "icu", edges: Edges | None = None) -> None:
         self.texts = texts
+        self.edges = edges
         self.joined = "".join(texts)
         self._rule = words
         self.bounds: Ints = _cumulated([len(text) for text in texts])

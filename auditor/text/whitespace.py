@@ -107,4 +107,7 @@ def _positions(stretch: Stretch, starts: Ints, ends: Ints) -> Ints:
     document = stretch.document_of(starts)
     leads = starts == stretch.bounds[document]
     trails = ends == stretch.bounds[document + 1]
+    if stretch.edges is not None:
+        leads &= stretch.edges.begins[document]
+        trails &= stretch.edges.ends[document]
     return np.where(leads, 0, np.where(trails, 2, 1)).astype(np.int64)

@@ -52,6 +52,8 @@ def closed_to_all() -> Bools:
     """Return the characters after which no cut is made for any vocabulary."""
     found = properties.table(r"\p{C}") | properties.table(r"\p{Z}")
     found = found | properties.table(properties.WHITESPACE)
+    # A prepended mark holds on to what follows it (UAX #29, GB9b).
+    found = found | properties.table(r"\p{Grapheme_Cluster_Break=Prepend}")
     found[ord(METASPACE)] = True
     found.setflags(write=False)
     return found

@@ -4,7 +4,8 @@ from __future__ import annotations
 
 import numpy as np
 import pytest
-from hypothesis import given
+import regex
+from hypothesis import given, settings
 from hypothesis import strategies as st
 from icu4py.breakers import WordBreaker
 
@@ -17,7 +18,7 @@ QUICK = "The quick (“brown”) fox can’t jump 32.3 feet, right?"
 
 # What decides boundaries: line ends, marks, joiners, emoji, scripts with dictionaries, astral.
 TRICKY = st.text(
-    alphabet=st.sampled_from(list("ab1. '’:_\r\n\t\v\u0308\u200d\ufe0f👍🇵🇹𝔘กาแม่ໜ日本カひक्ष\u202f\u2028א\""))
+    st.sampled_from("ab1. '’:_\r\n\t\v\u0308\u200d\ufe0f👍🇵🇹𝔘กาแม่ໜ日本カひक्ष\u202f\u2028א\"")
 )
 
 
@@ -56,8 +57,8 @@ def test_rules_of_uax_29(text, words):
 
 
 def test_thai_is_segmented_by_a_dictionary():
-    """UAX #29, section 4: Thai needs a dictionary; "ประเทศไทย" is the two words of "Thailand"."""
-    assert word_texts("ประเทศไทย") == ["ประเทศ", "ไทย"]
+    """UAX #29, section 4: Thai needs a dictionary; "cat eats fish" is three words."""
+    assert word_texts("แมวกินปลา") == ["แมว", "กิน", "ปลา"]
 
 
 @pytest.mark.parametrize(
@@ -125,9 +126,10 @@ def segments_alone(text):
     return [piece for piece in cut if any(holds[ord(character)] for character in piece)]
 
 
+@settings(max_examples=300)
 @given(st.lists(TRICKY, min_size=1, max_size=8))
 def test_words_of_many_documents_are_those_of_each(texts):
-    """Laying documents end to end neither joins nor splits a word (line ends, marks, emoji, Thai)."""
+    """Laying documents end to end neither joins nor splits a word."""
     assert word_texts(*texts) == [word for text in texts for word in segments_alone(text)]
 
 
@@ -139,7 +141,7 @@ def test_words_of_many_documents_are_those_of_each_on_any_text(texts):
 
 @given(st.lists(TRICKY, min_size=1, max_size=6))
 def test_runs_of_many_documents_are_those_of_each(texts):
-    """The whitespace rule: `regex`'s maximal runs, one document at a time, are the oracle."""
-    expected = [word for text in texts for word in word_texts(text, words="whitespace")]
+    """The whitespace rule against `regex`: runs of each document that hold a letter or number."""
+    runs = [run for text in texts for run in regex.findall(r"\P{White_Space}+", text)]
+    expected = [run for run in runs if regex.search(r"[\p{L}\p{N}]", run)]
     assert word_texts(*texts, words="whitespace") == expected
-    assert all(not properties.table(properties.WHITESPACE)[ord(c)] for w in expected for c in w)

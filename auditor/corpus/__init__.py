@@ -1,0 +1,18 @@
+"""Reading a corpus: files in many formats in, batches of documents and flawed records out."""
+
+from auditor.corpus.batch import Batch, Flaw
+from auditor.corpus.fields import Fields, resolve_fields
+from auditor.corpus.options import ReadOptions
+from auditor.corpus.reading import read
+from auditor.corpus.sources import Source, find_sources
+
+__all__ = [
+    "Batch",
+    "Fields",
+    "Flaw",
+    "ReadOptions",
+    "Source",
+    "find_sources",
+    "read",
+    "resolve_fields",
+]

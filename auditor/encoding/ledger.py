@@ -1,0 +1,175 @@
+"""The ledger of distinct pieces: each is measured once, and every total is count × measure.
+
+It is a cache. It is emptied when it is full, and what it says of a piece never depends on what it
+has seen before.
+"""
+
+from __future__ import annotations
+
+from collections.abc import Callable
+from dataclasses import dataclass, field
+
+import numpy as np
+
+from auditor.encoding.cutting import FIRST, Cut
+from auditor.encoding.measures import Columns
+from auditor.encoding.runprofiles import RunProfiles
+from auditor.encoding.whole import Contents, Measured, RunTable
+from auditor.vocabulary.engine import Ints
+
+# (texts, whether they begin a document, whether they end one) → the columns of text, and the
+# measures of each vocabulary.
+MeasurePieces = Callable[[list[str], Ints], tuple[Columns, list[Measured]]]
+Sink = Callable[[int, Contents], None]
+
+
+@dataclass
+class _Block:
+    """Pieces that were measured together: ledger rows from ``begin`` on."""
+
+    begin: int
+    measured: list[Measured]
+    sources: Ints
+    lines: Ints
+
+    def __len__(self) -> int:
+        return len(self.sources)
+
+
+@dataclass
+class _Table:
+    """Columns that grow: all of one length, with room to spare."""
+
+    columns: dict[str, Ints] = field(default_factory=dict)
+    used: int = 0
+
+    def extend(self, columns: Columns, count: int) -> None:
+        for name, values in columns.items():
+            held = self.columns.get(name)
+            if held is None or len(held) < self.used + count:
+                grown = np.zeros(max(1024, 2 * (self.used + count)), dtype=np.int64)
+                if held is not None:
+                    grown[: self.used] = held[: self.used]
+                self.columns[name] = held = grown
+            held[self.used : self.used + count] = values
+        self.used += count
+
+
+class Ledger:
+    """Distinct pieces and their measures under each of ``vocabularies`` vocabularies.
+
+    ``measure`` measures pieces that are new; ``sink`` takes in what pieces hold, with how often
+    each occurred, whenever the ledger is emptied. ``rows`` and ``bytes_held`` are bounded.
+    """
+
+    def __init__(
+        self,
+        vocabularies: int,
+        measure: MeasurePieces,
+        sink: Sink,
+        *,
+        most_rows: int = 300_000,
+        most_characters: int = 24 << 20,
+    ) -> None:
+        self._vocabularies = vocabularies
+        self._measure = measure
+        self._sink = sink
+        self._most_rows = most_rows
+        self._most_characters = most_characters
+        self._clear()
+
+    def _clear(self) -> None:
+        self._rows: dict[str, int] = {}
+        self._characters = 0
+        self._blocks: list[_Block] = []
+        self._totals = np.zeros(1024, dtype=np.int64)
+        self._text = _Table()
+        self._tables = [_Table() for _ in range(self._vocabularies)]
+        self._profiles = [RunProfiles() for _ in range(self._vocabularies)]
+
+    def missing(self, cut: Cut) -> list[int]:
+        """Return the indices of the keys of ``cut`` that are not in the ledger."""
+        rows = self._rows
+        return [place for place, key in enumerate(cut.keys) if key not in rows]
+
+    def take_in(self, cut: Cut, new: list[int], source: int, lines: Ints) -> None:
+        """Measure the ``new`` keys of ``cut``; ``lines`` (documents,) says where documents stand."""
+        if len(self._rows) + len(new) > self._most_rows or self._characters > self._most_characters:
+            self.empty()
+            new = list(range(len(cut.keys)))
+        for begins in (False, True):
+            keys = [place for place in new if (int(cut.keys[place][0]) >= FIRST) is begins]
+            if keys:
+                self._measure_block(cut, keys, source, lines)
+
+    def _measure_block(self, cut: Cut, places: list[int], source: int, lines: Ints) -> None:
+        keys = [cut.keys[place] for place in places]
+        texts = [key[1:] for key in keys]
+        text, measured = self._measure(texts, np.array([int(key[0]) for key in keys]))
+        begin = len(self._rows)
+        self._rows.update({key: begin + place for place, key in enumerate(keys)})
+        self._characters += sum(map(len, texts))
+        self._text.extend(text, len(keys))
+        triples = zip(self._tables, self._profiles, measured, strict=True)
+        for table, profiles, found in triples:
+            table.extend({**found.columns, "profile": profiles.of(found.runs, len(keys))}, len(keys))
+        sources = np.full(len(keys), source, dtype=np.int64)
+        self._blocks.append(_Block(begin, measured, sources, lines[cut.firsts[places]]))
+
+    def rows_of(self, cut: Cut) -> Ints:
+        """Return the row of each key of ``cut``, all of which are in the ledger."""
+        rows = self._rows
+        return np.array([rows[key] for key in cut.keys], dtype=np.int64)
+
+    def count(self, rows: Ints, counts: Ints) -> None:
+        """Add occurrences: row ``rows[i]`` occurs ``counts[i]`` times more; rows are distinct."""
+        if len(self._totals) < len(self._rows):
+            grown = np.zeros(2 * len(self._rows), dtype=np.int64)
+            grown[: len(self._totals)] = self._totals
+            self._totals = grown
+        self._totals[rows] += counts
+
+    def text_columns(self, rows: Ints, bounds: Ints) -> Columns:
+        """Return the columns of text of documents whose pieces are ``rows``."""
+        return _sums(self._text, rows, bounds)
+
+    def columns(self, vocabulary: int, rows: Ints, bounds: Ints) -> Columns:
+        """Return the columns of documents under one vocabulary; all pieces must be lossless."""
+        found = _sums(self._tables[vocabulary], rows, bounds)
+        whole = found["lossless_documents"] == np.diff(bounds)
+        return {**found, "lossless_documents": whole.astype(np.int64)}
+
+    def runs(self, vocabulary: int, rows: Ints, bounds: Ints) -> RunTable:
+        """Return the runs of whitespace of documents, equal ones of a document taken together."""
+        profile = self._tables[vocabulary].columns["profile"][rows]
+        documents = np.repeat(np.arange(len(bounds) - 1), np.diff(bounds))
+        return self._profiles[vocabulary].expand(profile, documents)
+
+    def ids(self, vocabulary: int, row: int) -> Ints:
+        """Return the tokens of the piece in ``row``."""
+        begins = [block.begin for block in self._blocks]
+        block = self._blocks[int(np.searchsorted(begins, row, side="right")) - 1]
+        measured = block.measured[vocabulary]
+        begin, end = measured.bounds[row - block.begin : row - block.begin + 2]
+        return measured.ids[begin:end]
+
+    def empty(self) -> None:
+        """Hand what pieces hold to the sink, with their counts, and forget all pieces."""
+        for block in self._blocks:
+            weights = self._totals[block.begin : block.begin + len(block)]
+            for vocabulary, measured in enumerate(block.measured):
+                self._sink(vocabulary, Contents(measured, weights, block.sources, block.lines))
+        self._clear()
+
+
+def _sums(table: _Table, rows: Ints, bounds: Ints) -> Columns:
+    """Return the sum of each column over the pieces of each document, none of which is empty."""
+    found = {}
+    for name, values in table.columns.items():
+        if name == "profile":
+            continue
+        if values[: table.used].any():
+            found[name] = np.add.reduceat(values[rows], bounds[:-1])
+        else:
+            found[name] = np.zeros(len(bounds) - 1, dtype=np.int64)
+    return found

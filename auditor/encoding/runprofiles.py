@@ -1,0 +1,58 @@
+"""Profiles of whitespace: the few ways in which pieces hold runs, each numbered once."""
+
+from __future__ import annotations
+
+import numpy as np
+
+from auditor.encoding.whole import RunTable
+from auditor.vocabulary.engine import Ints
+
+Row = tuple[int, ...]
+
+
+class RunProfiles:
+    """Numbers the runs that a piece holds: a profile is the rows (kind, columns) of its runs."""
+
+    def __init__(self) -> None:
+        self._numbers: dict[tuple[Row, ...], int] = {}
+
+    def of(self, runs: RunTable, pieces: int) -> Ints:
+        """Return the profile of each of ``pieces`` pieces, given the runs in them."""
+        rows = np.concatenate((runs.kind_of[:, None], runs.table), axis=1)
+        distinct, inverse = np.unique(rows, axis=0, return_inverse=True)
+        known = [tuple(row) for row in distinct.tolist()]
+        held: list[tuple[int, ...]] = [()] * pieces
+        pairs = zip(runs.document_of.tolist(), inverse.reshape(-1).tolist(), strict=True)
+        for piece, row in pairs:
+            held[piece] = (*held[piece], row)
+        numbered: dict[tuple[int, ...], int] = {}
+        found = np.empty(pieces, dtype=np.int64)
+        for piece, places in enumerate(held):
+            number = numbered.get(places)
+            if number is None:
+                profile = tuple(sorted(known[place] for place in places))
+                number = numbered[places] = self._numbers.setdefault(profile, len(self._numbers))
+            found[piece] = number
+        return found
+
+    def expand(self, profile_of: Ints, document_of: Ints) -> RunTable:
+        """Return the runs of pieces, given the profile and the document of each piece."""
+        width = len(self._numbers)
+        codes, times = np.unique(document_of * width + profile_of, return_counts=True)
+        documents, profiles = np.divmod(codes, width)
+        begins, table = self._flat()
+        lengths = np.diff(begins)[profiles]
+        places = np.repeat(begins[profiles] - np.cumsum(lengths) + lengths, lengths)
+        places += np.arange(len(places))
+        rows = table[places]
+        counted = rows[:, 1:] * np.repeat(times, lengths)[:, None]
+        return RunTable(rows[:, 0], counted, np.repeat(documents, lengths))
+
+    def _flat(self) -> tuple[Ints, Ints]:
+        """Return where each profile begins among all rows, and these rows."""
+        lengths = [len(profile) for profile in self._numbers]
+        begins = np.zeros(len(lengths) + 1, dtype=np.int64)
+        np.cumsum(lengths, out=begins[1:])
+        rows = [row for profile in self._numbers for row in profile]
+        width = len(rows[0]) if rows else 9
+        return begins, np.array(rows, dtype=np.int64).reshape(-1, width)

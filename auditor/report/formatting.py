@@ -1,0 +1,103 @@
+"""How numbers and pieces of text are written for a person; nothing is computed here."""
+
+from __future__ import annotations
+
+import math
+from collections.abc import Mapping
+from typing import Any
+
+import regex
+
+from auditor.figures.catalogue import CATALOGUE, RELATIVE_TOKENS, REPEATED_DOCUMENTS
+from auditor.report import tables
+
+Json = Mapping[str, Any]
+
+DASH = "–"
+FIGURES = {figure.name: figure for figure in (*CATALOGUE, RELATIVE_TOKENS, REPEATED_DOCUMENTS)}
+SHARES = frozenset(figure.name for figure in FIGURES.values() if figure.share) | {"used_entries"}
+# The separators that `printable` leaves; they break a line in some terminals.
+_LINE_BREAKS = regex.compile(r"[\p{Zl}\p{Zp}]")
+_FEWEST, _MOST = 2, 6
+
+
+def count(number: int | None) -> str:
+    """Return a whole number with a comma at each thousand, a dash for ``None``."""
+    return DASH if number is None else f"{number:,}"
+
+
+def value(name: str, figure: Json) -> str:
+    """Return the value of the figure called ``name``, a dash when it is undefined."""
+    if figure["value"] is None:
+        return DASH
+    return _number(figure["value"], _decimals(name, figure), share=name in SHARES)
+
+
+def interval(name: str, figure: Json) -> str | None:
+    """Return the two ends as ``low to high``; ``None`` where there is no interval."""
+    if figure["low"] is None or figure["high"] is None:
+        return None
+    decimals, share = _decimals(name, figure), name in SHARES
+    ends = (_number(figure[end], decimals, share=share) for end in ("low", "high"))
+    return " to ".join(ends)
+
+
+def ranged(name: str, figure: Json) -> str:
+    """Return the value and, where there is one, its interval in brackets."""
+    ends = interval(name, figure)
+    return value(name, figure) + (f" ({ends})" if ends else "")
+
+
+def quantile(found: Json) -> str:
+    """Return an observed length and its interval; an open end is a dash."""
+    if found["low"] is None and found["high"] is None:
+        return count(found["value"])
+    return f"{count(found['value'])} ({count(found['low'])} to {count(found['high'])})"
+
+
+def _decimals(name: str, figure: Json) -> int:
+    """Return as many decimals as show two digits of the interval's half width."""
+    scale = 100 if name in SHARES else 1
+    low, high, middle = figure["low"], figure["high"], figure["value"] or 0
+    spread = middle if low is None or high is None else max(high - middle, middle - low)
+    fewest = _FEWEST - 1 if name in SHARES else _FEWEST
+    if not spread:
+        return fewest
+    wanted = 1 - math.floor(math.log10(spread * scale))
+    return max(fewest, min(_MOST, wanted))
+
+
+def _number(number: float, decimals: int, *, share: bool) -> str:
+    """Return a number that is never rounded to 0 %, nor to 100 %, when it is neither."""
+    sign, scale = ("%", 100) if share else ("", 1)
+    shown = f"{number * scale:,.{decimals}f}"
+    least = f"{10**-decimals:.{decimals}f}"
+    if number > 0 and not any(digit in shown for digit in "123456789"):
+        return f"<{least}{sign}"
+    if share and number < 1 and shown.startswith("100"):
+        return f">{100 - 10**-decimals:.{decimals}f}{sign}"
+    return shown + sign
+
+
+def size(number: int) -> str:
+    """Return a number of bytes in the decimal unit that suits it."""
+    for unit, scale in (("GB", 10**9), ("MB", 10**6), ("kB", 10**3)):
+        if number >= scale:
+            return f"{number / scale:,.1f} {unit}"
+    return f"{number:,} bytes"
+
+
+def clean(text: str, longest: int = 160) -> str:
+    """Return corpus text on one line, unprintable characters as code points, cut when too long."""
+    shown = text if len(text) <= longest else text[:longest] + "…"
+    return _LINE_BREAKS.sub(lambda m: f"⟨U+{ord(m[0]):04X}⟩", tables.printable(shown))
+
+
+def plural(number: int, noun: str) -> str:
+    """Return the number with its noun, which takes an s unless there is one."""
+    return f"{count(number)} {noun}{'' if number == 1 else 's'}"
+
+
+def plain_name(name: str) -> str:
+    """Return a figure's name as words."""
+    return name.replace("_", " ")
