@@ -102,6 +102,7 @@ Example:
     metavar="N",
     help="Text measured at a time; never changes a figure.",
 )
+@click.option("--whole", is_flag=True, help="Encode every document whole: slower, the same figures.")
 @click.option("--json", "as_json", is_flag=True, help="Print audit.json alone on standard output.")
 @click.option("--quiet", is_flag=True, help="Print nothing but errors.")
 def command(
@@ -126,6 +127,7 @@ def command(
     batch_bytes: int,
     as_json: bool,
     quiet: bool,
+    whole: bool,
 ) -> None:
     """Measure CORPUS against one vocabulary or several, and write the whole audit.
 
@@ -144,7 +146,10 @@ def command(
         text=tuple(text.split(",")) if text else (), by=by, origin=origin, unit=unit,
         encoding=encoding, batch_bytes=batch_bytes, strict=strict,
     )  # fmt: skip
-    plan = Plan(corpus, specs, options, words, graphemes, repeats, not no_excerpts, workers)
+    plan = Plan(
+        corpus, specs, options, words=words, graphemes=graphemes, repeats=repeats,
+        excerpts=not no_excerpts, workers=workers, whole=whole,
+    )  # fmt: skip
     shown = progress.for_terminal(quiet=quiet)
     try:
         written = assess(plan, out, overwrite=overwrite, progress=shown)

@@ -11,6 +11,7 @@ from pathlib import Path
 from typing import Any
 
 from auditor.corpus import Batch, Fields, Source, find_sources, read, resolve_fields
+from auditor.encoding.documents import SeparationFault, Tale
 from auditor.errors import CorpusError, SettingsError
 from auditor.report import contract, page, tables
 from auditor.runs.assembling import assemble
@@ -62,28 +63,68 @@ def assess(
     sources = find_sources(plan.corpus)
     fields = resolve_fields(sources, plan.read)
     plan, how = _with_conversations(plan, fields)
-    names = [source.name for source in sources]
-    total = _total_bytes(sources)
-    workers = choose_workers(plan.workers, total)
+    reading = _Reading(sources, fields, how, progress)
+    try:
+        return _audited(plan, reading, out, overwrite=overwrite, began=began)
+    except SeparationFault as fault:
+        if any(source.name == "-" for source in sources):
+            raise
+        again = replace(plan, whole=True)
+        return _audited(again, reading, out, overwrite=overwrite, began=began, fault=str(fault))
+
+
+@dataclass(frozen=True)
+class _Reading:
+    sources: list[Source]
+    fields: Fields
+    conversations: str | None
+    progress: Callable[[Progress], None] | None
+
+    @property
+    def names(self) -> list[str]:
+        return [source.name for source in self.sources]
+
+    @property
+    def total(self) -> int | None:
+        sizes = [source.size for source in self.sources]
+        return None if any(size is None for size in sizes) else sum(size or 0 for size in sizes)
+
+
+def _audited(
+    plan: Plan,
+    reading: _Reading,
+    out: Path | None,
+    *,
+    overwrite: bool,
+    began: float,
+    fault: str | None = None,
+) -> Written:
+    workers = choose_workers(plan.workers, reading.total)
     with Processes(plan, workers) as processes:
         facts = _named_apart(processes.facts)
         folder = out or Path("reports") / default_name(plan, facts)
         with OutputFolder(folder, overwrite=overwrite) as output:
             rows = DocumentRows(output.begun, [own.name for own in facts], plan.read.by)
+            tallies, tale = empty_tallies(plan, facts), Tale()
             try:
-                tallies = empty_tallies(plan, facts)
-                batches = _batches(sources, plan, fields, total, progress)
-                for outcome in processes.measured(batches):
-                    tallies.merge(outcome.tallies)
+                for outcome in processes.measured(_batches(plan, reading)):
+                    tallies.merge_documents(outcome.corpus, outcome.documents)
                     rows.add(outcome)
             finally:
                 rows.close()
-            _refuse_empty(tallies, names)
-            settings: Json = {"fields": fields.as_json(), "conversations": how}
-            audit = assemble(plan, facts, tallies, names, settings)
+            _refuse_empty(tallies, reading.names)
+            for finished in processes.finished():
+                tallies.merge_contents(finished.contents)
+                tale.merge(finished.tale)
+            settings: Json = {
+                "fields": reading.fields.as_json(),
+                "conversations": reading.conversations,
+            }
+            audit = assemble(plan, facts, tallies, reading.names, settings)
             worst = _worst_words(plan, facts, tallies)
-            _write(output, audit, worst, facts, tallies, names)
-            output.write("run.json", contract.dump(_run(plan, workers, total, began)))
+            _write(output, audit, worst, facts, tallies, reading.names)
+            run = _run(plan, tale, fault, workers, reading.total, began)
+            output.write("run.json", contract.dump(run))
             return Written(audit, worst, folder, output.finish())
 
 
@@ -129,41 +170,30 @@ def _with_conversations(plan: Plan, fields: Fields) -> tuple[Plan, str | None]:
     return plan, f"contents joined by line feeds ({reason})"
 
 
-def _total_bytes(sources: list[Source]) -> int | None:
-    sizes = [source.size for source in sources]
-    return None if any(size is None for size in sizes) else sum(size or 0 for size in sizes)
-
-
-def _batches(
-    sources: list[Source],
-    plan: Plan,
-    fields: Fields,
-    total: int | None,
-    progress: Callable[[Progress], None] | None,
-) -> Iterator[tuple[Batch, int]]:
-    numbers = {source.name: number for number, source in enumerate(sources)}
+def _batches(plan: Plan, reading: _Reading) -> Iterator[tuple[Batch, int]]:
+    numbers = {name: number for number, name in enumerate(reading.names)}
     reached = documents = 0
 
     def note(read_bytes: int) -> None:
         nonlocal reached
         reached = read_bytes
 
-    for batch in read(sources, plan.read, fields, progress=note):
+    for batch in read(reading.sources, plan.read, reading.fields, progress=note):
         documents += len(batch)
         yield batch, numbers[batch.source]
-        if progress is not None:
-            progress(Progress(reached, total, documents))
+        if reading.progress is not None:
+            reading.progress(Progress(reached, reading.total, documents))
 
 
 def _refuse_empty(tallies: AuditTallies, names: list[str]) -> None:
-    if tallies.documents:
+    if tallies.measured:
         return
-    aside = tallies.set_aside.reasons.total()
+    aside = tallies.corpus.set_aside.reasons.total()
     raise CorpusError(
         f"no document to measure; {aside} records were set aside."
         if aside
         else "no document to measure: the corpus is empty.",
-        hint=f"Most frequent reason: {tallies.set_aside.reasons.most_common(1)[0][0]}."
+        hint=f"Most frequent reason: {tallies.corpus.set_aside.reasons.most_common(1)[0][0]}."
         if aside
         else None,
         where=", ".join(names[:3]),
@@ -173,8 +203,8 @@ def _refuse_empty(tallies: AuditTallies, names: list[str]) -> None:
 def _worst_words(plan: Plan, facts: list[VocabularyFacts], tallies: AuditTallies) -> WorstWords:
     if not plan.excerpts:
         return []
-    pairs = zip(facts, tallies.vocabularies, strict=True)
-    return [(own.name, tables.worst_words(tally.words)) for own, tally in pairs]
+    pairs = zip(facts, tallies.contents, strict=True)
+    return [(own.name, tables.worst_words(contents.words)) for own, contents in pairs]
 
 
 def _write(
@@ -185,9 +215,8 @@ def _write(
     tallies: AuditTallies,
     names: list[str],
 ) -> None:
-    characters = [
-        (own.name, tally.characters) for own, tally in zip(facts, tallies.vocabularies, strict=True)
-    ]
+    pairs = zip(facts, tallies.contents, strict=True)
+    characters = [(own.name, contents.characters) for own, contents in pairs]
     output.write("audit.json", contract.dump(audit))
     output.write("figures.csv", tables.as_csv(tables.figures(audit)))
     output.write("lengths.csv", tables.as_csv(tables.lengths(audit)))
@@ -196,17 +225,21 @@ def _write(
     output.write("report.html", page.render(audit, worst))
 
 
-def _run(plan: Plan, workers: int, total: int | None, began: float) -> Json:
+def _run(
+    plan: Plan, tale: Tale, fault: str | None, workers: int, total: int | None, began: float
+) -> Json:
     """Return `run.json`: how it was measured, everything that may differ between runs."""
-    seconds = time.monotonic() - began
     unit = 1 if sys.platform == "darwin" else 1024
     return {
         "format": "auditor/run",
         "version": 1,
-        "encoding": "every document whole",
+        "documents": {"whole": tale.whole, "by_pieces": tale.by_pieces},
+        "pieces": {"occurrences": tale.pieces, "measured": tale.distinct_pieces},
+        "encoded_whole_because": dict(sorted(tale.reasons.items())),
+        "check": {"documents_encoded_both_ways": tale.checked, "fault": fault},
         "workers": workers,
         "batch_bytes": plan.read.batch_bytes,
-        "seconds": round(seconds, 3),
+        "seconds": round(time.monotonic() - began, 3),
         "source_bytes": total,
         "peak_memory_bytes": {
             "this_process": resource.getrusage(resource.RUSAGE_SELF).ru_maxrss * unit,

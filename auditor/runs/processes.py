@@ -7,16 +7,17 @@ from collections import deque
 from collections.abc import Iterable, Iterator
 from concurrent.futures import Future, ProcessPoolExecutor
 from multiprocessing import get_context
+from multiprocessing.synchronize import Barrier
 
 from auditor.corpus import Batch
-from auditor.runs.measuring import Measurer, Outcome
+from auditor.runs.measuring import Finished, Measurer, Outcome
 from auditor.runs.plan import Plan
 from auditor.vocabulary import VocabularyFacts
 
 # Below this many bytes one process is done before others have started.
 WORTH_SPREADING = 16 << 20
-_plan: Plan | None = None
-_measurer: Measurer | None = None
+# Seconds that a worker waits for the others when the run ends; a batch takes far less.
+_PATIENCE = 3600
 
 
 def choose_workers(asked: int, corpus_bytes: int | None) -> int:
@@ -40,8 +41,10 @@ class Processes:
             self.facts: list[VocabularyFacts] = self._local.facts
             return
         # Spawned, never forked: the engines' threads do not survive a fork.
+        context = get_context("spawn")
+        meeting = context.Barrier(workers)
         self._pool = ProcessPoolExecutor(
-            workers, mp_context=get_context("spawn"), initializer=_start, initargs=(plan,)
+            workers, mp_context=context, initializer=_start, initargs=(plan, meeting)
         )
         self.facts = self._pool.submit(_facts).result()
 
@@ -50,45 +53,57 @@ class Processes:
 
         At most two batches a worker wait at a time, so that memory does not grow with the corpus.
         """
-        if self._local is not None:
+        if self._pool is not None:
+            yield from self._spread(self._pool, batches)
+        elif self._local is not None:
             for batch, source in batches:
                 yield self._local.measure(batch, source)
-            return
-        yield from self._spread(batches)
 
-    def _spread(self, batches: Iterable[tuple[Batch, int]]) -> Iterator[Outcome]:
+    def _spread(
+        self, pool: ProcessPoolExecutor, batches: Iterable[tuple[Batch, int]]
+    ) -> Iterator[Outcome]:
         waiting: deque[Future[Outcome]] = deque()
-        if self._pool is None:
-            return
         for batch, source in batches:
-            waiting.append(self._pool.submit(_measure, batch, source))
+            waiting.append(pool.submit(_measure, batch, source))
             if len(waiting) >= 2 * self._workers:
                 yield waiting.popleft().result()
         while waiting:
             yield waiting.popleft().result()
 
+    def finished(self) -> Iterator[Finished]:
+        """Yield what each process hands over when all batches are measured."""
+        if self._pool is not None:
+            waiting = [self._pool.submit(_finish) for _ in range(self._workers)]
+            yield from (future.result() for future in waiting)
+        elif self._local is not None:
+            yield self._local.finish()
+
     def __enter__(self) -> Processes:
         return self
 
-    def __exit__(self, *_: object) -> None:
+    def __exit__(self, kind: object, value: object, trace: object) -> None:
         if self._pool is not None:
             self._pool.shutdown(wait=True, cancel_futures=True)
 
 
-def _start(plan: Plan) -> None:
+class _Worker:
+    """What a worker process holds for its whole life: one plan, and the vocabularies opened."""
+
+    plan: Plan
+    meeting: Barrier
+    measurer: Measurer | None = None
+
+
+def _start(plan: Plan, meeting: Barrier) -> None:
     """Remember the plan; each worker is one of several, so that the library gets one thread."""
-    global _plan  # noqa: PLW0603 - a worker process serves one plan for its whole life
     os.environ.setdefault("TOKENIZERS_PARALLELISM", "false")
-    _plan = plan
+    _Worker.plan, _Worker.meeting = plan, meeting
 
 
 def _own() -> Measurer:
-    global _measurer  # noqa: PLW0603
-    if _measurer is None:
-        if _plan is None:
-            raise RuntimeError("a worker was not started by Processes")
-        _measurer = Measurer(_plan)
-    return _measurer
+    if _Worker.measurer is None:
+        _Worker.measurer = Measurer(_Worker.plan)
+    return _Worker.measurer
 
 
 def _facts() -> list[VocabularyFacts]:
@@ -97,3 +112,9 @@ def _facts() -> list[VocabularyFacts]:
 
 def _measure(batch: Batch, source: int) -> Outcome:
     return _own().measure(batch, source)
+
+
+def _finish() -> Finished:
+    # All workers meet here, so that none of them takes the call that is meant for another.
+    _Worker.meeting.wait(_PATIENCE)
+    return _own().finish()
