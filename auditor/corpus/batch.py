@@ -9,8 +9,9 @@ from dataclasses import dataclass, field
 class Flaw:
     """A record that was set aside, or one that was mended and measured.
 
-    ``line`` is the 1-based line of a text file or row of a table (``None`` when unknown), ``detail``
-    what exactly was wrong (a byte position, a type), never the record's own text.
+    ``line`` is the 1-based line of a text file, or the number of a record in a table or a JSON
+    array (``None`` when unknown). ``detail`` says what exactly was wrong (a byte position counted
+    from 1 in the record, a field's name), never the record's own text.
     """
 
     source: str
@@ -25,7 +26,9 @@ class Batch:
 
     ``number`` counts batches from 0 in reading order. ``slices`` maps each field of ``--by`` to the
     slice key of every document (``lang=pt``); ``origins`` and ``identifiers`` are ``None`` when
-    the corpus has none. ``set_aside`` and ``mended`` are the flaws met while these were read.
+    the corpus has none; a document without an origin is its own (``file:line``), one without an
+    identifier has an empty one. ``set_aside`` and ``mended`` are the flaws met while these were
+    read. ``read_bytes`` counts the bytes of all files read so far, as they lie on the disk.
     """
 
     number: int

@@ -1,4 +1,4 @@
-"""Compressed streams, expanded piece by piece; where one breaks off, all before it is handed over."""
+"""Compressed streams, expanded piece by piece; all that lies before a break is handed over."""
 
 from __future__ import annotations
 

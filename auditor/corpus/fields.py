@@ -23,6 +23,8 @@ PAIRS = (
 IDENTIFIERS = ("id", "_id", "uid", "guid")
 
 _RECORDS_LOOKED_AT = 100
+# So far is looked for the first record when those before it are damaged.
+_ROWS_LOOKED_AT = 10_000
 _SOURCES_LOOKED_AT = 8
 
 Records = list[dict[str, Any]]
@@ -52,11 +54,12 @@ class Fields:
 
 
 def resolve_fields(sources: Sequence[Source], options: ReadOptions) -> Fields:
-    """Return the fields to read, from the first 100 records of the first eight sources with records.
+    """Return the fields to read, from the first 100 records of each of the first eight sources.
 
     ``--text`` wins; else the one field of text among the usual names, else ``messages``, else the
-    only field of text. Raises CorpusError when a named field is not there or when several fields
-    could hold the text, with the list of them; SettingsError for options that do not fit.
+    only field of text; ``text`` when no record can be read. Plain text has no fields. Raises
+    CorpusError, with the list of what is there, when a named field is not or when several could
+    hold the text; SettingsError for options that do not fit.
     """
     options.check()
     tables = [s for s in sources if s.format(options.encoding) in RECORDS]
@@ -78,8 +81,8 @@ def _look(tables: Sequence[Source], options: ReadOptions) -> Records:
     for source in tables[:_SOURCES_LOOKED_AT]:
         with source.open(keep=True) as stream:
             rows = rows_of(source, stream, options, None)
-            values = (record for _, record, _ in islice(rows, _RECORDS_LOOKED_AT))
-            found += [value for value in values if isinstance(value, dict)]
+            records = (r for _, r, _ in islice(rows, _ROWS_LOOKED_AT) if isinstance(r, dict))
+            found += islice(records, _RECORDS_LOOKED_AT)
     return found
 
 
@@ -88,7 +91,8 @@ def _resolve(records: Records, options: ReadOptions, *, plain: bool) -> Fields:
     pseudo = () if SOURCE in names else (SOURCE,)
     _check_named(records, names, options, plain=plain)
     if plain or not records:
-        return Fields(options.text, identifier=options.identifier, pseudo=pseudo)
+        text = () if plain else options.text or CANDIDATES[:1]
+        return Fields(text, identifier=options.identifier, pseudo=pseudo)
     text = options.text or _find_text(records, names)
     values = [reach(record, text[0]) for record in records]
     conversation = len(text) == 1 and any(map(is_conversation, values))

@@ -56,7 +56,7 @@ def parse_leniently(raw: bytes) -> tuple[object, tuple[Mend, ...]]:
         mends = (*mends, Mend("lone surrogate"))
     strange: list[str] = []
     try:
-        value = json.loads(mended, parse_constant=lambda name: strange.append(name))
+        value = json.loads(mended, parse_constant=strange.append)
     except json.JSONDecodeError as fault:
         return Damage(NOT_JSON, f"character {fault.pos + 1}: {fault.msg}"), NOT_MENDED
     except RecursionError:

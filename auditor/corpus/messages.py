@@ -2,7 +2,7 @@
 
 from __future__ import annotations
 
-from typing import Any
+from typing import Any, TypeGuard
 
 from auditor.corpus.options import Render
 from auditor.corpus.rows import Damage
@@ -11,7 +11,7 @@ from auditor.errors import CorpusError
 MESSAGES = "messages"
 
 
-def is_conversation(value: object) -> bool:
+def is_conversation(value: object) -> TypeGuard[list[dict[str, Any]]]:
     """Whether ``value`` is a list of messages, one at least."""
     return (
         isinstance(value, list)
@@ -28,7 +28,7 @@ def conversation_text(value: object, render: Render | None) -> str | Damage:
     if not is_conversation(value):
         return Damage("not a conversation")
     messages: list[dict[str, Any]] = []
-    for number, message in enumerate(value, start=1):  # type: ignore[arg-type]
+    for number, message in enumerate(value, start=1):
         content = _content(message["content"])
         if isinstance(content, Damage):
             return Damage(content.reason, f"message {number}")
@@ -41,12 +41,15 @@ def conversation_text(value: object, render: Render | None) -> str | Damage:
         return Damage("conversation cannot be rendered", fault.message)
 
 
-def _content(content: object) -> str | None | Damage:
+def _content(content: object) -> str | Damage | None:
     if content is None or isinstance(content, str):
         return content
     if not isinstance(content, list):
         return Damage("not a conversation")
-    texts = [part.get("text") if isinstance(part, dict) else None for part in content]
-    if not all(isinstance(text, str) for text in texts):
-        return Damage("not a conversation")
+    texts: list[str] = []
+    for part in content:
+        text = part.get("text") if isinstance(part, dict) else None
+        if not isinstance(text, str):
+            return Damage("not a conversation")
+        texts.append(text)
     return "".join(texts)

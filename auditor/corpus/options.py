@@ -2,7 +2,6 @@
 
 from __future__ import annotations
 
-import codecs
 from collections.abc import Callable
 from dataclasses import dataclass
 from typing import Any, Literal
@@ -20,7 +19,7 @@ SOURCE = "source"
 
 @dataclass(frozen=True, slots=True)
 class ReadOptions:
-    r"""The settings of reading; none but ``batch_bytes`` and ``batch_documents`` changes a batch only.
+    r"""The settings of reading.
 
     ``text`` names the fields that hold the text, several are joined by ``\n``; empty: found by the
     rules of `resolve_fields`. ``by``, ``origin`` and ``identifier`` name fields; a dot reaches into
@@ -28,7 +27,8 @@ class ReadOptions:
     plain text (see `auditor.corpus.lines`). ``encoding`` is that of whole files, ``None`` is UTF-8.
     A batch holds at most ``batch_documents`` documents and ``batch_bytes`` UTF-8 bytes of text, or
     what the last document adds to it. ``strict``: the first flaw raises CorpusError. ``render``
-    makes the text of a conversation; ``None``: the contents joined by ``\n``.
+    makes the text of a conversation; ``None``: the contents joined by ``\n``. The size of batches
+    and ``strict`` change no document.
     """
 
     text: tuple[str, ...] = ()
@@ -47,11 +47,9 @@ class ReadOptions:
         if self.batch_bytes < 1 or self.batch_documents < 1:
             raise SettingsError("a batch must hold at least one byte and one document.")
         try:
-            known = self.encoding is None or codecs.lookup(self.encoding)._is_text_encoding
+            "".encode(self.encoding or "utf-8")
         except LookupError:
-            known = False
-        if not known:
             raise SettingsError(
                 f"{self.encoding} is no encoding of text.",
                 hint="Name one such as utf-16, cp1252 or shift_jis.",
-            )
+            ) from None

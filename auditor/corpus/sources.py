@@ -14,7 +14,7 @@ from typing import BinaryIO
 
 from auditor.corpus import compression, formats
 from auditor.corpus.compression import Compression
-from auditor.corpus.streams import Pipe, PipeReader, Stream
+from auditor.corpus.streams import Pipe, PipeReader, Stream, read_head
 from auditor.errors import CorpusError
 
 # They describe a saved data set and lie beside its tables.
@@ -71,10 +71,10 @@ class Source:
     def _look(self, encoding: str | None) -> tuple[Compression | None, formats.Format | None]:
         if encoding not in self._looked:
             raw = self._raw(keep=True)
-            packed = compression.sniff(raw.read(16))
+            packed = compression.sniff(read_head(raw, 16))
             raw.close()
             stream = Stream(self._raw(keep=True), packed)
-            head = stream.read(formats.HEAD)
+            head = read_head(stream, formats.HEAD)
             whole = len(head) < formats.HEAD
             stream.close()
             if encoding is not None:
@@ -135,7 +135,8 @@ def _paths(argument: str) -> list[Path]:
 
 
 def _glob(pattern: str) -> list[Path]:
-    matches = [Path(match) for match in sorted(glob.glob(pattern, recursive=True))]
+    # Path.glob refuses absolute patterns.
+    matches = [Path(match) for match in sorted(glob.glob(pattern, recursive=True))]  # noqa: PTH207
     files = [m for m in matches if not m.is_dir() and m.name not in _DESCRIPTIONS]
     if "**" not in pattern:
         files += [path for match in matches if match.is_dir() for path in _folder(match)]

@@ -149,6 +149,14 @@ class Utf8:
             )  # fmt: skip
 
 
+def read_head(stream: Bytes, size: int) -> bytes:
+    """Return the first ``size`` bytes of ``stream``, fewer only when there are no more."""
+    head = b""
+    while len(head) < size and (more := stream.read(size - len(head))):
+        head += more
+    return head
+
+
 def read_all(stream: Bytes) -> bytes:
     """Return everything that is left of ``stream``."""
     return b"".join(iter(lambda: stream.read(1 << 20), b""))

@@ -44,6 +44,8 @@ def spelled(value: object) -> str:
         return value
     if value is None or value is MISSING:
         return NONE
+    if type(value) is int:
+        return str(value)
     if isinstance(value, bytes):
         return value.decode("utf-8", "replace")
     return json.dumps(value, ensure_ascii=False, separators=(",", ":"), default=str)

@@ -14,6 +14,9 @@ MORE_THAN_CASE: Alteration = 2
 
 # What normalisers insert; no word holds either (UAX #29).
 _INSERTED = str.maketrans("", "", " \u2581")
+# `regex` also pairs i with İ and ı, as Turkish does; full case folding (CaseFolding.txt, C and F)
+# takes İ for i with a dot above, and ı for itself: so spelled, they match nothing else.
+_DOTS = str.maketrans({"\u0130": "i\u0307", "\u0131": "\uffff"})
 _REMEMBERED = 400_000
 
 
@@ -51,4 +54,5 @@ def _same_but_for_case(word: str, other: str) -> bool:
     if word.isascii() and other.isascii():
         return word.lower() == other.lower()
     flags = regex.IGNORECASE | regex.FULLCASE | regex.VERSION1
-    return regex.fullmatch(regex.escape(word), other, flags=flags) is not None
+    pattern = regex.escape(word.translate(_DOTS))
+    return regex.fullmatch(pattern, other.translate(_DOTS), flags=flags) is not None

@@ -5,11 +5,13 @@ from __future__ import annotations
 from dataclasses import dataclass
 
 import numpy as np
+import numpy.typing as npt
 import pyarrow as pa
 
 from auditor.text import properties
 from auditor.text.stretch import Stretch
 from auditor.vocabulary.engine import Bools, Ints
+from auditor.vocabulary.separation import WHITESPACE_AFTER_WORDS, Separation
 
 _SPACE = 0x20
 # A key of the ledger: one of these for where in its document a piece stands, then its text.
@@ -32,25 +34,49 @@ class Cut:
     firsts: Ints
 
 
-def cut_places(stretch: Stretch, closed: Bools) -> Ints:
-    """Return the positions inside documents before which a cut stands.
+@dataclass(frozen=True, slots=True)
+class Places:
+    """Where cuts are allowed: what all vocabularies of a run allow (see ``Separation``)."""
 
-    A cut stands before U+0020 with a letter or number after it and, before it, a character of the
-    same document that ``closed`` does not mark.
-    """
-    points = stretch.points
-    spaces = np.flatnonzero(points[1:-1] == _SPACE) + 1
-    letters = properties.table(properties.WORD_CHARACTER)
-    spaces = spaces[~closed[points[spaces - 1]] & letters[points[spaces + 1]]]
-    document = stretch.document_of(spaces)
-    inside = (spaces > stretch.bounds[document]) & (spaces + 1 < stretch.bounds[document + 1])
-    return spaces[inside]
+    closed: Bools
+    open_words: dict[str, Bools]
+
+    @classmethod
+    def common(cls, separations: list[Separation]) -> Places:
+        """Return the places that every one of ``separations`` allows."""
+        closed = np.logical_or.reduce([s.closed for s in separations])
+        words = {
+            mark: np.logical_and.reduce([s.open_words[mark] for s in separations])
+            for mark in WHITESPACE_AFTER_WORDS
+        }
+        return cls(closed, words)
+
+    def within(self, stretch: Stretch) -> Ints:
+        """Return the positions inside documents before which a cut stands, in rising order."""
+        points = stretch.points
+        inner = points[1:]
+        found = [
+            self._after_words(points, mark, np.flatnonzero(inner == ord(mark)) + 1)
+            for mark in WHITESPACE_AFTER_WORDS
+        ]
+        spaces = np.flatnonzero(inner[:-1] == _SPACE) + 1
+        found.append(self._before_space(stretch, spaces))
+        places = np.unique(np.concatenate(found))
+        return places[places > stretch.bounds[stretch.document_of(places)]]
+
+    def _after_words(self, points: npt.NDArray[np.uint32], mark: str, places: Ints) -> Ints:
+        return places[self.open_words[mark][points[places - 1]]]
+
+    def _before_space(self, stretch: Stretch, places: Ints) -> Ints:
+        points = stretch.points
+        letters = properties.table(properties.WORD_CHARACTER)
+        places = places[~self.closed[points[places - 1]] & letters[points[places + 1]]]
+        return places[places + 1 < stretch.bounds[stretch.document_of(places) + 1]]
 
 
-def cut(stretch: Stretch, closed: Bools) -> Cut:
+def cut(stretch: Stretch, places: Places) -> Cut:
     """Return the pieces of ``stretch``, in which no document is empty."""
-    begins = stretch.bounds[:-1]
-    starts = np.sort(np.concatenate((begins, cut_places(stretch, closed))))
+    starts = np.sort(np.concatenate((stretch.bounds[:-1], places.within(stretch))))
     bounds = np.searchsorted(starts, stretch.bounds)
     form, texts = _dictionary(stretch, starts)
     standing = np.zeros(len(starts), dtype=np.int64)

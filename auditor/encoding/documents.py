@@ -6,10 +6,11 @@ import hashlib
 import re
 from collections.abc import Callable
 from dataclasses import dataclass, field
+from functools import partial
 
 import numpy as np
 
-from auditor.encoding.cutting import FIRST, LAST, Cut, cut
+from auditor.encoding.cutting import FIRST, LAST, Cut, Places, cut
 from auditor.encoding.ledger import Ledger
 from auditor.encoding.measures import Columns, text_columns
 from auditor.encoding.whole import Contents, Measured, RunTable, WholeTexts
@@ -95,7 +96,7 @@ class Documents:
             for v, s in zip(vocabularies, self._separations, strict=True)
         ]
         held = [s for s in self._separations if s is not None]
-        self._closed: Bools = np.logical_or.reduce([s.closed for s in held]) if held else np.array([])
+        self._places = Places.common(held) if held else None
         self._added = _AddedContents(sorted({c for s in held for c in s.whole_for}))
         self._ledger = Ledger(len(self._cut), self._measure_pieces, self._sink_pieces)
 
@@ -110,15 +111,16 @@ class Documents:
 
     def measure(self, stretch: Stretch, source: int, lines: Ints) -> Counted:
         """Return the measures of ``stretch``, whose documents stand at ``lines`` of ``source``."""
-        if not self._cut:
+        if self._places is None:
             return self._measure_whole(stretch, source, lines)
         apart = self._must_be_whole(stretch)
         if apart.all():
             return self._measure_whole(stretch, source, lines)
         if not apart.any():
-            return self._measure_cut(stretch, source, lines)
+            return self._measure_cut(self._places, stretch, source, lines)
         parts = []
-        for chosen, measure in ((apart, self._measure_whole), (~apart, self._measure_cut)):
+        cutting = partial(self._measure_cut, self._places)
+        for chosen, measure in ((apart, self._measure_whole), (~apart, cutting)):
             places = np.flatnonzero(chosen)
             texts = [stretch.texts[place] for place in places.tolist()]
             part = Stretch(texts, words=self._words)
@@ -148,8 +150,10 @@ class Documents:
         runs = find_runs(stretch)
         return [self._whole[place].measure(stretch, runs) for place in places]
 
-    def _measure_cut(self, stretch: Stretch, source: int, lines: Ints) -> Counted:
-        pieces = cut(stretch, self._closed)
+    def _measure_cut(
+        self, places: Places, stretch: Stretch, source: int, lines: Ints
+    ) -> Counted:
+        pieces = cut(stretch, places)
         new = self._ledger.missing(pieces)
         if sum(len(pieces.keys[n]) for n in new) > _TOO_DIVERSE * len(stretch.points) + 50_000:
             return self._measure_whole(stretch, source, lines)

@@ -190,14 +190,17 @@ def character_columns(reading: Reading) -> Columns:
 def lossless_column(reading: Reading, lost_space: str) -> Columns:
     """Return the column of texts that come back exactly; all 0 without a decoder.
 
-    ``lost_space`` is what decoding leaves out at the start of every text.
+    ``lost_space`` is what decoding leaves out at the start of a text that begins with a space.
     """
     engine, texts = reading.engine, reading.stretch.texts
     if not engine.has_decoder:
         return {"lossless_documents": np.zeros(len(texts), dtype=np.int64)}
     flat, bounds = reading.spans.ids.tolist(), reading.spans.bounds.tolist()
     decoded = engine.decode([flat[bounds[i] : bounds[i + 1]] for i in range(len(texts))])
-    same = [text == lost_space + back for text, back in zip(texts, decoded, strict=True)]
+    same = [
+        text == (lost_space + back if text[:1] == " " else back)
+        for text, back in zip(texts, decoded, strict=True)
+    ]
     return {"lossless_documents": np.array(same, dtype=np.int64)}
 
 

@@ -30,6 +30,8 @@ def value(name: str, figure: Json) -> str:
     """Return the value of the figure called ``name``, a dash when it is undefined."""
     if figure["value"] is None:
         return DASH
+    if isinstance(figure["value"], int):
+        return count(figure["value"])
     return _number(figure["value"], _decimals(name, figure), share=name in SHARES)
 
 
@@ -46,6 +48,13 @@ def ranged(name: str, figure: Json) -> str:
     """Return the value and, where there is one, its interval in brackets."""
     ends = interval(name, figure)
     return value(name, figure) + (f" ({ends})" if ends else "")
+
+
+def ranged_or_why(name: str, figure: Json) -> str:
+    """Return the value with its interval, or a dash with the reason why there is none."""
+    if figure["value"] is None:
+        return f"{DASH} ({figure['note']})"
+    return ranged(name, figure)
 
 
 def quantile(found: Json) -> str:
@@ -90,7 +99,7 @@ def size(number: int) -> str:
 def clean(text: str, longest: int = 160) -> str:
     """Return corpus text on one line, unprintable characters as code points, cut when too long."""
     shown = text if len(text) <= longest else text[:longest] + "…"
-    return _LINE_BREAKS.sub(lambda m: f"⟨U+{ord(m[0]):04X}⟩", tables.printable(shown))
+    return str(_LINE_BREAKS.sub(lambda m: f"⟨U+{ord(m[0]):04X}⟩", tables.printable(shown)))
 
 
 def plural(number: int, noun: str) -> str:

@@ -1,15 +1,19 @@
-"""Does a splitting pattern always split before a single space? Proved from the pattern itself.
+"""Does a splitting pattern always split at some places? Proved from the pattern itself.
 
-The claim: a match that holds a character *p*, which is no whitespace, ends before a U+0020 that
-follows it, and neither side of that place looks across it. It holds when every alternative of the
-pattern is of one of two forms, and every character is matched by some alternative:
+Two claims. *Before a single space*: a match that holds a character which is no whitespace ends
+before a U+0020 that follows it. *After a word*: a match that holds a letter or digit ends before
+the whitespace that follows it. In both, neither side of the place looks across it.
+
+The first holds when every alternative of the pattern is of one of two forms:
 
 - whitespace only: nothing in it matches anything but whitespace, `(?!\\S)` or `$` may end it;
-- a body that cannot match U+0020, after at most one optional element that may.
+- a body that cannot match U+0020, after at most one optional element that may;
 
-For then U+0020 can only come first in a match, or among whitespace; and a look-ahead stands only
-behind whitespace, so that it sees no further than *p*. Anything this reader does not know is not
-proved, and such a pattern is never relied on.
+for then U+0020 can only come first in a match, or among whitespace. The second holds when besides,
+in every alternative, no element at or after one that matches a letter or digit matches whitespace.
+A look-ahead stands only behind whitespace, so that it never sees past the place. And every
+character must be matched by some alternative, or what no alternative matches would stay together.
+Anything this reader does not know is not proved, and such a pattern is never relied on.
 """
 
 from __future__ import annotations
@@ -26,6 +30,7 @@ _ELEMENT = regex.compile(
     r"|(?P<unit>\[\^?(?:\\.\{[^}]*\}|\\.|[^\]\\])+\]|\\[pP]\{[^}]*\}|\\.|[^\\()\[\]|*+?{}^$.])"
 )
 _QUANTIFIER = regex.compile(r"(?:[?*+]|\{\d+(?:,\d*)?\})[+?]?")
+_WORD_SAMPLE = "aZ09éßǅʰªЖωאسकก中あ가Ⅷ²½٣"
 _WHITESPACE_SAMPLE = " \t\n\r\v\f\x85\u00a0\u1680\u2003\u2028\u2029\u202f\u205f\u3000"
 
 
@@ -41,12 +46,37 @@ class _Part:
 
 @cache
 def splits_before_single_space(pattern: str) -> bool:
-    """Return whether the claim above is proved for ``pattern``."""
+    """Return whether the first claim is proved for ``pattern``."""
+    alternatives = _alternatives(pattern)
+    return alternatives is not None and all(map(_is_admitted, alternatives))
+
+
+@cache
+def splits_after_word(pattern: str) -> bool:
+    """Return whether both claims are proved for ``pattern``."""
+    alternatives = _alternatives(pattern)
+    return alternatives is not None and all(
+        _is_admitted(parts) and _ends_with_word(parts) for parts in alternatives
+    )
+
+
+def _alternatives(pattern: str) -> list[list[_Part]] | None:
+    """Return the parts of each alternative; ``None`` when the pattern cannot be read."""
     try:
-        alternatives = [_parts(branch) for branch in _branches(pattern)]
-        return all(_is_admitted(parts) for parts in alternatives) and _covers_everything(pattern)
+        found = [_parts(branch) for branch in _branches(pattern)]
+        return found if _covers_everything(pattern) else None
     except (ValueError, regex.error):
-        return False
+        return None
+
+
+def _ends_with_word(parts: list[_Part]) -> bool:
+    """Return whether nothing at or after an element that matches a word character matches space."""
+    reached = False
+    for part in parts:
+        reached = reached or _may_hold(part, _WORD_SAMPLE)
+        if reached and _may_hold(part, _WHITESPACE_SAMPLE):
+            return False
+    return True
 
 
 def _branches(pattern: str) -> list[str]:
@@ -93,14 +123,17 @@ def _is_admitted(parts: list[_Part]) -> bool:
     if any(part.look for part in parts):
         return False
     body = parts[1:] if parts[0].optional else parts
-    return bool(body) and not any(_may_hold_space(part) for part in body)
+    return bool(body) and not any(_may_hold(part, " ") for part in body)
 
 
-def _may_hold_space(part: _Part) -> bool:
-    """Return whether an element can match U+0020; a group, whether any branch holds one."""
-    if part.source.startswith("("):
-        return " " in part.source or "\\s" in part.source or "[^" in part.source
-    return part.matches(" ")
+def _may_hold(part: _Part, sample: str) -> bool:
+    """Return whether an element can match a character of ``sample``; of a group, any element."""
+    if part.look:
+        return False
+    if not part.source.startswith("("):
+        return any(part.matches(character) for character in sample)
+    body = _ELEMENT.match(part.source)["body"]
+    return any(_may_hold(inner, sample) for branch in _branches(body) for inner in _parts(branch))
 
 
 def _is_whitespace_only(part: _Part) -> bool:

@@ -1,15 +1,22 @@
 """Where a document may be cut so that its parts, encoded apart, give the tokens of the whole.
 
-The only cut there is stands before a single space: a character that is neither whitespace nor
-control, then U+0020, then a letter or a number. For each vocabulary it must be proved that no
-token, no merge and no rule reaches across; one for which it is not is encoded whole. UAX #29 has a
-word boundary there too, on the side of the space that the cut is on.
+There are two kinds of cut, and none but these:
+
+- *before a single space*: a character that is neither whitespace nor control, then U+0020, then a
+  letter or a number;
+- *after a word*: a letter or a number, then U+0020, a tab or a line end.
+
+For each vocabulary it must be proved that no token, no merge and no rule reaches across; one for
+which it is not is encoded whole. UAX #29 has a word boundary at both.
 """
 
 from __future__ import annotations
 
+import unicodedata
+from collections.abc import Callable
 from dataclasses import dataclass
 from functools import cache
+from itertools import pairwise
 from typing import Any
 
 import numpy as np
@@ -17,7 +24,7 @@ import numpy as np
 from auditor.text import properties
 from auditor.vocabulary.engine import Bools, Engine
 from auditor.vocabulary.opening import Vocabulary
-from auditor.vocabulary.patterns import splits_before_single_space
+from auditor.vocabulary.patterns import splits_after_word, splits_before_single_space
 from auditor.vocabulary.ranks_engine import RanksEngine
 from auditor.vocabulary.sentencepiece_engine import SentencePieceEngine
 from auditor.vocabulary.tokenizers_engine import METASPACE, TokenizersEngine, steps_of
@@ -27,29 +34,37 @@ from auditor.vocabulary.tokenizers_engine import METASPACE, TokenizersEngine, st
 _LOCAL_NORMALIZERS = frozenset(
     {"NFC", "NFD", "NFKC", "NFKD", "Lowercase", "StripAccents", "BertNormalizer"}
 )
+# The whitespace before which a cut after a word is made.
+WHITESPACE_AFTER_WORDS = " \t\r\n"
 # Pre-tokenisers that always split before a single space, and those that at least keep to parts.
-_SPLITTING = frozenset({"BertPreTokenizer", "Whitespace", "WhitespaceSplit", "Metaspace"})
+_SPLITTING = frozenset({"BertPreTokenizer", "Whitespace", "WhitespaceSplit"})
 _LOCAL_SPLITTERS = frozenset({"Digits", "Punctuation"})
+# The pattern of the byte-level pre-tokeniser (openai/gpt-2, src/encoder.py).
+_BYTE_LEVEL = (
+    r"'s|'t|'re|'ve|'m|'ll|'d| ?\p{L}+| ?\p{N}+| ?[^\s\p{L}\p{N}]+|\s+(?!\S)|\s+"
+)
 
 
 @dataclass(frozen=True)
 class Separation:
     """How the parts of a document are encoded.
 
-    ``later`` encodes the parts that begin with the cut's space; ``lost_space`` is what a decoded
-    later part lacks at its start. No cut is made after a character that ``closed`` marks, and a
-    document that holds one of ``whole_for`` is encoded whole.
+    ``later`` encodes the parts that do not begin a document; ``lost_space`` is what such a part
+    lacks at its start, once decoded, when it begins with a space. ``closed`` marks the characters
+    after which there is no cut before a single space, ``open_words`` those after which there is one
+    before each kind of whitespace. A document that holds one of ``whole_for`` is encoded whole.
     """
 
     later: Engine
     lost_space: str
     closed: Bools
+    open_words: dict[str, Bools]
     whole_for: tuple[str, ...]
 
 
 @cache
 def closed_to_all() -> Bools:
-    """Return the characters after which no cut is made for any vocabulary."""
+    """Return the characters after which no cut before a single space is made for any vocabulary."""
     found = properties.table(r"\p{C}") | properties.table(r"\p{Z}")
     found = found | properties.table(properties.WHITESPACE)
     # A prepended mark holds on to what follows it (UAX #29, GB9b).
@@ -57,6 +72,28 @@ def closed_to_all() -> Bools:
     found[ord(METASPACE)] = True
     found.setflags(write=False)
     return found
+
+
+@cache
+def settled_words() -> Bools:
+    """Return the letters and numbers that every engine takes for such.
+
+    Engines follow different versions of Unicode; these were letters or numbers in version 3.2,
+    which the standard library keeps for comparison, and still are.
+    """
+    found = properties.table(properties.WORD_CHARACTER) & ~closed_to_all()
+    for point in np.flatnonzero(found).tolist():
+        found[point] = unicodedata.ucd_3_2_0.category(chr(point))[0] in "LN"
+    found.setflags(write=False)
+    return found
+
+
+def _words_open_to_all() -> dict[str, Bools]:
+    return dict.fromkeys(WHITESPACE_AFTER_WORDS, settled_words())
+
+
+def _no_words_open() -> dict[str, Bools]:
+    return dict.fromkeys(WHITESPACE_AFTER_WORDS, np.zeros(properties.CODE_POINTS, dtype=np.bool_))
 
 
 def separate(vocabulary: Vocabulary) -> Separation | str:
@@ -74,7 +111,8 @@ def separate(vocabulary: Vocabulary) -> Separation | str:
 def _ranks(engine: RanksEngine) -> Separation | str:
     if not splits_before_single_space(engine.pattern):
         return "the splitting pattern is not proved to split before a single space"
-    return Separation(engine, "", closed_to_all(), ())
+    words = _words_open_to_all() if splits_after_word(engine.pattern) else _no_words_open()
+    return Separation(engine, "", closed_to_all(), words, ())
 
 
 def _sentencepiece(engine: SentencePieceEngine, entries: list[str | None]) -> Separation | str:
@@ -86,7 +124,8 @@ def _sentencepiece(engine: SentencePieceEngine, entries: list[str | None]) -> Se
     if engine.proto.trainer_spec.treat_whitespace_as_suffix:
         return "it writes the space after the word"
     later = engine.without_prefix()
-    return Separation(later, _lost_space(later), _closed_by_entries(entries), ())
+    closed, words = _by_entries(entries)
+    return Separation(later, _lost_space(later), closed, words, ())
 
 
 def _tokenizers(engine: TokenizersEngine, entries: list[str | None]) -> Separation | str:
@@ -99,33 +138,37 @@ def _tokenizers(engine: TokenizersEngine, entries: list[str | None]) -> Separati
     if steps and any(token["normalized"] for token in added):
         return "added tokens are sought in the normalised text"
     contents = tuple(token["content"] for token in added if token["content"])
-    if _splits_before_space(steps_of(description, "pre_tokenizer")):
+    splitters = steps_of(description, "pre_tokenizer")
+    if _splits(splitters, splits_before_single_space):
         if any(step["type"] not in _LOCAL_NORMALIZERS for step in steps):
             return "its normaliser is not proved to act part by part"
-        return Separation(engine, _lost_space(engine), closed_to_all(), contents)
+        after = _splits(splitters, splits_after_word)
+        words = _words_open_to_all() if after else _no_words_open()
+        return Separation(engine, _lost_space(engine), closed_to_all(), words, contents)
     return _without_splitter(engine, steps, entries, contents)
 
 
-def _splits_before_space(steps: list[dict[str, Any]]) -> bool:
-    """Return whether every step keeps to parts and one of them always splits there."""
-    splits = [_step_splits(step) for step in steps]
-    return all(split is not None for split in splits) and any(splits)
+def _splits(steps: list[dict[str, Any]], proves: Callable[[str], bool]) -> bool:
+    """Return whether every step keeps to parts and one of them always splits, as ``proves`` says."""
+    answers = [_step_splits(step, proves) for step in steps]
+    return all(answer is not None for answer in answers) and any(answers)
 
 
-def _step_splits(step: dict[str, Any]) -> bool | None:
-    """Return whether a step splits before a single space; ``None`` when nothing is proved."""
+def _step_splits(step: dict[str, Any], proves: Callable[[str], bool]) -> bool | None:
+    """Return whether a step always splits there; ``None`` when nothing is proved of it."""
     kind = step["type"]
     if kind == "ByteLevel":
-        return bool(step.get("use_regex", True))
+        return bool(step.get("use_regex", True)) and proves(_BYTE_LEVEL)
     if kind == "Metaspace":
-        return True if step.get("split", True) else None
+        # It splits at spaces alone.
+        return True if step.get("split", True) and proves is splits_before_single_space else None
     if kind == "Split":
         pattern = step["pattern"].get("Regex")
         keeps = (step["behavior"], step.get("invert", False)) in {
             ("Isolated", False),
             ("Removed", True),
         }
-        return True if pattern and keeps and splits_before_single_space(pattern) else None
+        return True if pattern and keeps and proves(pattern) else None
     if kind in _SPLITTING:
         return True
     return False if kind in _LOCAL_SPLITTERS else None
@@ -148,20 +191,29 @@ def _without_splitter(
     if steps not in ([prepends, marks], [marks]):
         return "its normaliser is not proved to act part by part"
     later = engine.with_normalizer(marks)
-    return Separation(later, _lost_space(later), _closed_by_entries(entries), contents)
+    closed, words = _by_entries(entries)
+    return Separation(later, _lost_space(later), closed, words, contents)
 
 
-def _closed_by_entries(entries: list[str | None]) -> Bools:
-    """Close the characters that stand before a marker within some entry: a merge may join them."""
-    found = np.array(closed_to_all())
+def _by_entries(entries: list[str | None]) -> tuple[Bools, dict[str, Bools]]:
+    """Return what is closed, and open after words, when entries alone decide what is joined.
+
+    A merge can join two characters only if some entry holds them side by side.
+    """
+    before = {mark: set[str]() for mark in (METASPACE, *WHITESPACE_AFTER_WORDS[1:])}
     for entry in entries:
-        if entry and METASPACE in entry[1:]:
-            place = entry.find(METASPACE, 1)
-            while place > 0:
-                found[ord(entry[place - 1])] = True
-                place = entry.find(METASPACE, place + 1)
-    found.setflags(write=False)
-    return found
+        for left, right in pairwise(entry or ""):
+            if right in before:
+                before[right].add(left)
+    closed = np.array(closed_to_all())
+    closed[[ord(left) for left in before[METASPACE]]] = True
+    closed.setflags(write=False)
+    words = {}
+    for mark, lefts in before.items():
+        table = np.array(settled_words())
+        table[[ord(left) for left in lefts]] = False
+        words[" " if mark == METASPACE else mark] = table
+    return closed, words
 
 
 def _lost_space(engine: Engine) -> str:

@@ -62,7 +62,7 @@ def paper(tmp_path):
     ],
 )
 def test_words_after_the_ten_merges_of_algorithm_1(paper, word, entries):
-    """Sennrich et al. (2016): low and newest are whole after nine merges, wi joins with the tenth."""
+    """Sennrich et al. (2016): low and newest are whole after nine merges, wi is the tenth."""
     assert entries_of(paper, word) == entries
 
 

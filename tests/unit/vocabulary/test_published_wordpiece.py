@@ -2,6 +2,8 @@
 
 from __future__ import annotations
 
+from string import ascii_lowercase
+
 import pytest
 
 from tests.unit.small_vocabularies import entries_of, measured, wordpiece
@@ -9,7 +11,7 @@ from tests.unit.small_vocabularies import entries_of, measured, wordpiece
 # tokenization_test.py, test_full_tokenizer and test_wordpiece_tokenizer.
 PUBLISHED = ["[UNK]", "[CLS]", "[SEP]", "want", "##want", "##ed", "wa", "un", "runn", "##ing", ","]
 # Every ASCII letter as an entry and as a continuation, so that nothing but the limit is unknown.
-LETTERS = ["[UNK]", *"abcdefghijklmnopqrstuvwxyz", *(f"##{c}" for c in "abcdefghijklmnopqrstuvwxyz")]
+LETTERS = ["[UNK]", *ascii_lowercase, *(f"##{letter}" for letter in ascii_lowercase)]
 
 
 @pytest.fixture
@@ -32,7 +34,7 @@ def test_ids_of_the_release_s_own_tests(published, text, ids):
 
 
 def test_the_docstring_s_example(tmp_path):
-    """tokenization.py, WordpieceTokenizer: "unaffable" is un ##aff ##able (its vocabulary a toy)."""
+    """tokenization.py, WordpieceTokenizer: "unaffable" is un ##aff ##able, given those."""
     vocabulary = wordpiece(tmp_path, ["[UNK]", "un", "##aff", "##able"])
     assert entries_of(vocabulary, "unaffable") == ["un", "##aff", "##able"]
 

@@ -90,6 +90,12 @@ def test_marks_do_not_cross_documents():
     assert corrected(["e", "\u0301n"], [(OTHER, 0, 1)], [(OTHER, 1, 2)]) == [(0, 1), (2, 3)]
 
 
+def test_marks_stop_at_the_end_of_their_document():
+    """(c), against: bare marks on both sides of a document's end; only the near one is taken."""
+    texts, tokens = ["e\u0301", "\u0301n"], ([(OTHER, 0, 1)], [(OTHER, 1, 2)])
+    assert corrected(texts, *tokens) == [(0, 2), (3, 4)]
+
+
 def test_an_empty_span_takes_no_marks():
     """(c) with (a): an inserted marker before a leading mark holds nothing still."""
     assert corrected(["\u0301n"], [(MARKER, 0, 0), (OTHER, 1, 2)]) == [(0, 0), (1, 2)]

@@ -1,0 +1,199 @@
+"""The page a person reads: one file of HTML without scripts or outside parts."""
+
+from __future__ import annotations
+
+from collections.abc import Mapping, Sequence
+from functools import cache
+from typing import Any
+
+from jinja2 import Environment, PackageLoader, StrictUndefined
+from markupsafe import Markup, escape
+
+from auditor.report import answers, bins, charts, formatting
+from auditor.report.answers import Excerpt, Sentence
+from auditor.report.meanings import MEANINGS
+from auditor.report.questions import QUESTIONS
+from auditor.report.repeating import blocks, command, command_notes
+from auditor.report.slices import anything_cut, costliest_first, sets, whole
+from auditor.report.tables import words as word_rows
+from auditor.tallies.words import BrokenWord
+
+Json = Mapping[str, Any]
+WorstWords = Sequence[tuple[str, list[tuple[BrokenWord, int]]]]
+
+FATES = ("kept", "merged", "dropped", "unknown", "changed")
+_COSTLIEST, _LOST = 40, 20
+_DRAWN_COSTLY, _DRAWN_CHEAP = 45, 15
+_TABLED = 1000
+_SLICE_COLUMNS = (
+    "fertility", "relative_tokens", "unknown_words", "byte_spelled_characters",
+    "dropped_characters", "truncated_documents",
+)  # fmt: skip
+# A limit further out than this would squeeze the documents into a corner.
+_LIMIT_DRAWN = 4
+
+
+def render(audit: Json, worst: WorstWords) -> str:
+    """Return the page for an `audit.json` document and the costliest words of each vocabulary.
+
+    ``worst`` holds (vocabulary, [(word, count), …]) in the order of `tables.worst_words`; empty
+    when the audit was made without excerpts. The same input gives the same text.
+    """
+    template = _environment().get_template("report.html.jinja")
+    return template.render(
+        audit=audit,
+        slice_sets=[_set(number, audit, *found) for number, found in enumerate(sets(audit))],
+        word_tables=[table for name, rows in worst for table in _word_tables(name, rows)],
+        anything_cut=any(map(anything_cut, audit["vocabularies"])),
+        command=command(audit),
+        command_notes=command_notes(audit),
+        blocks=blocks(audit),
+        **_length_drawings(audit["vocabularies"]),
+    )
+
+
+@cache
+def _environment() -> Environment:
+    environment = Environment(
+        autoescape=True, loader=PackageLoader("auditor.report"), undefined=StrictUndefined,
+        trim_blocks=True, lstrip_blocks=True, keep_trailing_newline=True,
+    )  # fmt: skip
+    environment.filters |= {
+        "clean": formatting.clean,
+        "count": formatting.count,
+        "interval": lambda figure, name: formatting.interval(name, figure) or "",
+        "interval_or_note": _interval_or_note,
+        "length_value": lambda number: f"{number:,.1f}" if number % 1 else f"{int(number):,}",
+        "marked": marked,
+        "plural": formatting.plural,
+        "quantile": formatting.quantile,
+        "ranged": lambda figure, name: formatting.ranged(name, figure),
+        "size": formatting.size,
+        "value": lambda figure, name: formatting.value(name, figure),
+    }
+    environment.globals |= {
+        "questions": QUESTIONS,
+        "meanings": MEANINGS,
+        "fates": FATES,
+        "headline": answers.headline,
+        "key_of": _key_of,
+        "how_to_read": answers.HOW_TO_READ,
+        "languages_differ": answers.LANGUAGES_DIFFER,
+        "cut_is_lost": answers.CUT_IS_LOST,
+        "excerpts": answers.EXCERPTS,
+    }
+    return environment
+
+
+def marked(sentence: Sentence) -> Markup:
+    """Return a sentence as markup, text of the corpus apart from the direction of the rest."""
+    parts = (
+        Markup("<bdi>{}</bdi>").format(part) if isinstance(part, Excerpt) else escape(part)
+        for part in sentence
+    )
+    return Markup("").join(parts)
+
+
+def _interval_or_note(figure: Json, name: str) -> str:
+    if figure["note"]:
+        return "none seen" if figure["numerator"] == 0 else str(figure["note"])
+    return formatting.interval(name, figure) or ""
+
+
+def _length_drawings(vocabularies: Sequence[Json]) -> dict[str, list[Any]]:
+    scale = _scale(vocabularies)
+    return {
+        "length_drawings": [
+            charts.lengths(f"lengths-{number}", own, scale)
+            for number, own in enumerate(vocabularies)
+        ],
+        "drawing_words": [_under_lengths(own, scale) for own in vocabularies],
+    }
+
+
+def _scale(vocabularies: Sequence[Json]) -> bins.Scale:
+    """Return one scale for all vocabularies, so that their drawings compare."""
+    found = [whole(own)["lengths"] for own in vocabularies]
+    longest = max(lengths["maximum"] for lengths in found)
+    limits = [own["limit"]["value"] for own in vocabularies]
+    near = [limit for limit in limits if limit is not None and limit <= _LIMIT_DRAWN * longest]
+    return bins.scale_for(min(lengths["minimum"] for lengths in found), max([longest, *near]))
+
+
+def _under_lengths(vocabulary: Json, scale: bins.Scale) -> str:
+    limit = vocabulary["limit"]["value"]
+    spaced = "; each doubling of length takes the same width" if scale.doubling else ""
+    if limit is None:
+        return f"{spaced}. No limit is known."
+    if limit > scale.edges[-1]:
+        return f"{spaced}. The limit of {formatting.count(limit)} lies beyond the right edge."
+    return f"{spaced}. Right of the limit, hatched, is what it would cut."
+
+
+def _set(number: int, audit: Json, field: str, keys: list[str]) -> dict[str, Any]:
+    """Return everything the template shows of one set of slices."""
+    vocabularies = audit["vocabularies"]
+    held = [key for key in keys if _defined(vocabularies, key)]
+    drawn = [*held[:_DRAWN_COSTLY], *held[_DRAWN_COSTLY:][-_DRAWN_CHEAP:]]
+    columns, notes = _columns(vocabularies, keys)
+    if len(keys) > _TABLED:
+        notes.append(f"{formatting.count(len(keys) - _TABLED)} more stand in figures.csv.")
+    return {
+        "field": field or "other fields",
+        "told": [answers.slices(own, costliest_first(own, keys)) for own in vocabularies],
+        "drawing": charts.cost(f"cost-{number}", field, vocabularies, drawn),
+        "note": _not_drawn(len(keys), len(held), len(drawn)),
+        "columns": columns,
+        "notes": notes,
+        "tabled": keys[:_TABLED],
+    }
+
+
+def _defined(vocabularies: Sequence[Json], key: str) -> bool:
+    figures = (own["slices"][key]["figures"]["fertility"] for own in vocabularies)
+    return any(figure["value"] is not None for figure in figures)
+
+
+def _not_drawn(slices: int, held: int, drawn: int) -> str:
+    between = (
+        f"Drawn are the {_DRAWN_COSTLY} costliest and the {_DRAWN_CHEAP} cheapest of "
+        f"{formatting.count(slices)} slices. "
+        if held > drawn
+        else ""
+    )
+    undefined = f"Not drawn, without a word: {slices - held}." if slices > held else ""
+    return between + undefined
+
+
+def _columns(vocabularies: Sequence[Json], keys: Sequence[str]) -> tuple[list[str], list[str]]:
+    """Return the figures that have a value somewhere, and a sentence on each that has none."""
+    columns, notes = [], []
+    for name in _SLICE_COLUMNS:
+        found = [own["slices"][key]["figures"].get(name) for own in vocabularies for key in keys]
+        figures = [figure for figure in found if figure is not None]
+        if any(figure["value"] is not None for figure in figures):
+            columns.append(name)
+        elif figures:
+            notes.append(f"{name}: {formatting.DASH} ({figures[0]['note']}).")
+    return columns, notes
+
+
+def _word_tables(name: str, rows: list[tuple[BrokenWord, int]]) -> list[Json]:
+    """Return the table of the costliest words, then that of the words lost most often."""
+    lost = sorted((item for item in rows if item[0].unknown), key=lambda item: (-item[1], item[0]))
+    wanted = (
+        ("The words that cost most", rows[:_COSTLIEST]),
+        ("The words lost most often", lost[:_LOST]),
+    )
+    return [
+        {"caption": caption, "name": name, "rows": word_rows([(name, shown)]).to_dict("records")}
+        for caption, shown in wanted
+        if shown
+    ]
+
+
+def _key_of(number: int) -> Markup:
+    """Return the sign and the letter by which a drawing names a vocabulary."""
+    shape = charts.tag("path", d=charts.SHAPES[number % len(charts.SHAPES)][1])
+    sign = charts.tag("svg", shape, class_="key dot", viewBox="-7 -7 14 14", aria_hidden="true")
+    return Markup("{} {}").format(sign, charts.letter(number))

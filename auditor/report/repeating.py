@@ -1,0 +1,98 @@
+"""What is needed to make the same audit again: the command, settings, versions and digests."""
+
+from __future__ import annotations
+
+import json
+import shlex
+from collections.abc import Iterator, Mapping
+from typing import Any
+
+from auditor.report.formatting import count, plural
+
+Json = Mapping[str, Any]
+Block = tuple[str, list[tuple[str, str]]]
+
+_SOURCES = 10
+_OPTIONS = (("origin", None), ("unit", "record"), ("words", "icu"), ("control_strings", "parse"),
+            ("limit", None), ("encoding", None))  # fmt: skip
+_FLAGS = ("graphemes", "repeats")
+
+
+def command(audit: Json) -> str:
+    """Return the command line that makes this audit, quoted for a POSIX shell."""
+    sources = audit["corpus"]["sources"]
+    named = sources[:_SOURCES] if len(sources) <= _SOURCES else ["CORPUS"]
+    words = ["auditor", "assess", *named]
+    for vocabulary in audit["vocabularies"]:
+        words += ["--vocab", vocabulary["source"]]
+    return shlex.join([*words, *_options(audit["settings"])])
+
+
+def _options(settings: Json) -> Iterator[str]:
+    if settings.get("text"):
+        yield from ("--text", ",".join(settings["text"]))
+    for field in settings.get("by") or []:
+        yield from ("--by", field)
+    for name, usual in _OPTIONS:
+        if settings.get(name, usual) != usual:
+            yield from (f"--{name.replace('_', '-')}", str(settings[name]))
+    if settings.get("pattern") is not None:
+        yield from ("--pattern", "FILE")
+    yield from (f"--{name}" for name in _FLAGS if settings.get(name))
+
+
+def command_notes(audit: Json) -> list[str]:
+    """Return what the command cannot say by itself."""
+    sources = audit["corpus"]["sources"]
+    notes = []
+    if len(sources) > _SOURCES:
+        notes.append(f"CORPUS stands for {plural(len(sources), 'file')}, listed in audit.json.")
+    if audit["settings"].get("pattern") is not None:
+        notes.append("FILE holds the pattern that stands under Settings.")
+    return notes
+
+
+def blocks(audit: Json) -> list[Block]:
+    """Return titled lists of (name, text): corpus, vocabularies, settings, versions."""
+    corpus = audit["corpus"]
+    shown = ", ".join(corpus["sources"][:_SOURCES])
+    more = len(corpus["sources"]) - _SOURCES
+    sources = f"{shown} and {count(more)} more" if more > 0 else shown
+    return [
+        ("Corpus", [("sources", sources), ("digest", corpus["digest"])]),
+        *((f"Vocabulary {n}", _vocabulary(own)) for n, own in enumerate(audit["vocabularies"], 1)),
+        ("Settings", [(name, _text(found)) for name, found in audit["settings"].items()]),
+        ("Made with", [(name, _text(found)) for name, found in audit["made_with"].items()]),
+    ]
+
+
+def _vocabulary(vocabulary: Json) -> list[tuple[str, str]]:
+    limit = vocabulary["limit"]
+    declared = "; ".join(
+        f"{found['file']} {found['key']} = {found['value']}"
+        + (f" ({found['note']})" if found["note"] else "")
+        for found in limit["declared"]
+    )
+    overhead = vocabulary["overhead"]
+    facts = [
+        ("name", vocabulary["name"]),
+        ("source", vocabulary["source"]),
+        ("digest", vocabulary["digest"]),
+        ("family", vocabulary["family"]),
+        ("entries", count(vocabulary["entries"])),
+        ("overhead", f"{overhead['single']} for one sequence, {overhead['pair']} for a pair"),
+        ("limit", count(limit["value"])),
+        ("limits declared", declared or "none"),
+        ("unknown entry", _text((vocabulary["unknown"] or {}).get("entry"))),
+        ("byte pieces", vocabulary["byte_pieces"]["kind"]),
+    ]
+    notes = [("note", note) for note in (*limit["notes"], *vocabulary["notes"])]
+    return [*facts, *notes]
+
+
+def _text(found: object) -> str:
+    if isinstance(found, str):
+        return found
+    if found is None or found == []:
+        return "not set"
+    return json.dumps(found, ensure_ascii=False)
