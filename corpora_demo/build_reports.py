@@ -11,12 +11,11 @@ import shutil
 import sys
 import tempfile
 from pathlib import Path
-from typing import Any
 
 import orjson
 
 from auditor.corpus import ReadOptions
-from auditor.report import contract, page
+from auditor.report import page
 from auditor.runs.auditing import Written, assess
 from auditor.runs.plan import Plan
 from auditor.vocabulary import VocabularySpec
@@ -58,14 +57,16 @@ def stale(fresh: Path, done: dict[str, Written]) -> list[str]:
     """Return the stored files that differ from ``fresh``, versions of libraries aside."""
     names = {p.relative_to(fresh) for p in fresh.rglob("*") if p.is_file()}
     stored = {p.relative_to(SAMPLES) for p in SAMPLES.rglob("*") if p.is_file()}
-    differing = [str(name) for name in sorted(names ^ stored)]
-    for name in sorted(names & stored):
-        if name.suffix != ".html" and _comparable(fresh / name) != _comparable(SAMPLES / name):
-            differing.append(str(name))
-    return differing + [f"{name}/report.html" for name in PLANS if _stale_page(name, done[name])]
+    changed = [
+        name
+        for name in names & stored
+        if name.suffix != ".html" and _comparable(fresh / name) != _comparable(SAMPLES / name)
+    ]
+    pages = [f"{name}/report.html" for name in PLANS if _stale_page(name, done[name])]
+    return [*map(str, sorted([*(names ^ stored), *changed])), *pages]
 
 
-def _comparable(path: Path) -> Any:
+def _comparable(path: Path) -> object:
     if path.name != "audit.json":
         return path.read_bytes()
     return {k: v for k, v in orjson.loads(path.read_bytes()).items() if k != "made_with"}

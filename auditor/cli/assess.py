@@ -3,6 +3,7 @@
 from __future__ import annotations
 
 from pathlib import Path
+from typing import cast
 
 import click
 
@@ -102,7 +103,9 @@ Example:
     metavar="N",
     help="Text measured at a time; never changes a figure.",
 )
-@click.option("--whole", is_flag=True, help="Encode every document whole: slower, the same figures.")
+@click.option(
+    "--whole", is_flag=True, help="Encode every document whole: slower, the same figures."
+)
 @click.option("--json", "as_json", is_flag=True, help="Print audit.json alone on standard output.")
 @click.option("--quiet", is_flag=True, help="Print nothing but errors.")
 def command(
@@ -136,6 +139,7 @@ def command(
     """
     from auditor.cli.printing import print_audit
     from auditor.corpus import ReadOptions
+    from auditor.corpus.options import Unit
     from auditor.runs.auditing import assess
     from auditor.runs.plan import Plan
     from auditor.vocabulary import VocabularySpec
@@ -143,7 +147,7 @@ def command(
     spelled = pattern.read_text(encoding="utf-8") if pattern else None
     specs = tuple(VocabularySpec(name, control_strings, spelled, limit) for name in vocabularies)
     options = ReadOptions(
-        text=tuple(text.split(",")) if text else (), by=by, origin=origin, unit=unit,
+        text=tuple(text.split(",")) if text else (), by=by, origin=origin, unit=cast("Unit", unit),
         encoding=encoding, batch_bytes=batch_bytes, strict=strict,
     )  # fmt: skip
     plan = Plan(

@@ -20,7 +20,11 @@ def print_audit(written: Written, *, as_json: bool, quiet: bool) -> None:
     elif not quiet:
         colour = sys.stdout.isatty() and "NO_COLOR" not in os.environ
         width = min(WIDTH, os.get_terminal_size().columns) if sys.stdout.isatty() else WIDTH
-        click.echo(
-            terminal.summary(written.audit, files=written.files, width=width, colour=colour),
-            nl=False,
+        summary = terminal.summary(
+            written.audit,
+            files=written.files,
+            worst=written.worst_words,
+            width=width,
+            colour=colour,
         )
+        click.echo(summary, nl=False)

@@ -98,16 +98,12 @@ def _bytes_of(column: pa.Array) -> pa.Array:
 
 def _is_text(kind: pa.DataType) -> bool:
     types = pa.types
-    return bool(
-        types.is_string(kind) or types.is_large_string(kind) or types.is_string_view(kind)
-    )
+    return bool(types.is_string(kind) or types.is_large_string(kind) or types.is_string_view(kind))
 
 
 def _is_bytes(kind: pa.DataType) -> bool:
     types = pa.types
-    return bool(
-        types.is_binary(kind) or types.is_large_binary(kind) or types.is_binary_view(kind)
-    )
+    return bool(types.is_binary(kind) or types.is_large_binary(kind) or types.is_binary_view(kind))
 
 
 def _text_or_bytes(value: bytes | None) -> str | bytes | None:

@@ -103,9 +103,7 @@ def _identifier(names: list[str]) -> str | None:
     return next((name for name in IDENTIFIERS if name in names), None)
 
 
-def _check_named(
-    records: Records, names: list[str], options: ReadOptions, *, plain: bool
-) -> None:
+def _check_named(records: Records, names: list[str], options: ReadOptions, *, plain: bool) -> None:
     if options.text and plain:
         raise CorpusError("plain text has no fields.", hint="Leave --text out.")
     others = [*options.by, *filter(None, [options.origin, options.identifier])]

@@ -69,6 +69,8 @@ class _Records:
         self._scanner = _Scanner(stream)
         self._name = name
         self._number = 0
+        self._ended_early = False
+        self._last = 0
 
     def rows(self) -> Iterator[Row]:
         scanner = self._scanner
@@ -79,9 +81,8 @@ class _Records:
                 yield from self._array()
             elif bracket == b"{":
                 yield from self._object()
-        if self._stream.damage and not scanner.data[scanner.kept :].strip():
-            yield self._damage(self._stream.damage)
-        elif scanner.data[scanner.kept :].strip():
+        rest = bool(scanner.data[scanner.kept :].strip())
+        if not self._ended_early and (rest or self._stream.damage):
             yield self._damage(self._stream.damage or NOT_JSON)
 
     def _array(self) -> Iterator[Row]:
@@ -156,6 +157,7 @@ class _Records:
         return self._number, Damage(reason), NOT_MENDED
 
     def _ended(self) -> Row:
+        self._ended_early = True
         self._scanner.kept = self._scanner.at = len(self._scanner.data)
         return self._damage(self._stream.damage or "JSON ends early")
 

@@ -24,7 +24,7 @@ from auditor.corpus.options import Unit
 from auditor.corpus.rows import NOT_MENDED, Damage, Mend, Row, decoded
 from auditor.corpus.streams import Utf8, read_all
 
-_BLOCK = 1 << 20
+_BLOCK = 1 << 18
 _BLANK = " \t\r"
 
 
@@ -36,7 +36,7 @@ class Lines(NamedTuple):
 
 
 def whole_lines(stream: Utf8) -> Iterator[Lines | Row]:
-    """Yield about a mebibyte of whole lines at a time, longer lines as a whole.
+    """Yield whole lines, about 256 KiB at a time, longer lines as a whole.
 
     Where a compressed stream breaks off, the line it breaks off in is not handed over; the last
     thing is then a row that says so.

@@ -12,7 +12,7 @@ from auditor.tallies.words import BrokenWord
 from auditor.vocabulary.engine import Ints, Inventory
 
 _DOT = "·"
-_REMEMBERED = 200_000
+_REMEMBERED = 50_000
 # A word as long as this is shown by its beginning; its count stays with the whole word's pieces.
 LONGEST_SHOWN = 120
 

@@ -1,4 +1,4 @@
-"""Measures documents under several vocabularies: piece by piece where that is proved, else whole."""
+"""Measures documents under several vocabularies: by pieces where that is proved, else whole."""
 
 from __future__ import annotations
 
@@ -31,7 +31,7 @@ _CHECKED_FIRST = 32
 _CHECKED_AFTER = 401
 
 
-class SeparationFault(AuditError):
+class SeparationError(AuditError):
     """A document whose pieces did not add up to the whole: the run must be measured whole."""
 
 
@@ -133,8 +133,8 @@ class Documents:
 
     def _must_be_whole(self, stretch: Stretch) -> Bools:
         """Return which documents are encoded whole: empty ones, and those with an added token."""
-        found = np.diff(stretch.bounds) == 0
-        return found | self._added.in_texts(stretch.texts)
+        empty: Bools = np.diff(stretch.bounds) == 0
+        return empty | self._added.in_texts(stretch.texts)
 
     def _measure_whole(self, stretch: Stretch, source: int, lines: Ints) -> Counted:
         self.tale.whole += len(stretch)
@@ -150,9 +150,7 @@ class Documents:
         runs = find_runs(stretch)
         return [self._whole[place].measure(stretch, runs) for place in places]
 
-    def _measure_cut(
-        self, places: Places, stretch: Stretch, source: int, lines: Ints
-    ) -> Counted:
+    def _measure_cut(self, places: Places, stretch: Stretch, source: int, lines: Ints) -> Counted:
         pieces = cut(stretch, places)
         new = self._ledger.missing(pieces)
         if sum(len(pieces.keys[n]) for n in new) > _TOO_DIVERSE * len(stretch.points) + 50_000:
@@ -228,7 +226,7 @@ class Documents:
                 rows = by_piece[pieces.bounds[document] : pieces.bounds[document + 1]]
                 if not self._agrees(order, rows, found, text, place):
                     name = self._vocabularies[self._cut[order]].name
-                    raise SeparationFault(
+                    raise SeparationError(
                         f"pieces and whole differ under {name}.", where=f"line {lines[document]}"
                     )
 
@@ -238,9 +236,7 @@ class Documents:
         digest = hashlib.blake2b(text.encode(), digest_size=4).digest()
         return int.from_bytes(digest, "big") % _CHECKED_AFTER == 0
 
-    def _agrees(
-        self, order: int, rows: Ints, whole: Measured, text: Columns, place: int
-    ) -> bool:
+    def _agrees(self, order: int, rows: Ints, whole: Measured, text: Columns, place: int) -> bool:
         """Return whether one document's pieces, ``rows``, add up to what it is as a whole."""
         one = np.array([0, len(rows)])
         ids = np.concatenate([self._ledger.ids(order, row) for row in rows.tolist()])
@@ -305,5 +301,3 @@ def _woven_runs(parts: list[tuple[Ints, RunTable]]) -> RunTable:
         np.concatenate([runs.table for _, runs in parts]),
         np.concatenate([places[runs.document_of] for places, runs in parts]),
     )
-
-

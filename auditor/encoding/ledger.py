@@ -68,8 +68,8 @@ class Ledger:
         measure: MeasurePieces,
         sink: Sink,
         *,
-        most_rows: int = 300_000,
-        most_characters: int = 24 << 20,
+        most_rows: int = 150_000,
+        most_characters: int = 12 << 20,
     ) -> None:
         self._vocabularies = vocabularies
         self._measure = measure
@@ -93,7 +93,7 @@ class Ledger:
         return [place for place, key in enumerate(cut.keys) if key not in rows]
 
     def take_in(self, cut: Cut, new: list[int], source: int, lines: Ints) -> None:
-        """Measure the ``new`` keys of ``cut``; ``lines`` (documents,) says where documents stand."""
+        """Measure the ``new`` keys of ``cut``; ``lines`` (documents,) is where documents stand."""
         if len(self._rows) + len(new) > self._most_rows or self._characters > self._most_characters:
             self.empty()
             new = list(range(len(cut.keys)))
@@ -112,9 +112,11 @@ class Ledger:
         self._text.extend(text, len(keys))
         triples = zip(self._tables, self._profiles, measured, strict=True)
         for table, profiles, found in triples:
-            table.extend({**found.columns, "profile": profiles.of(found.runs, len(keys))}, len(keys))
+            profile = profiles.of(found.runs, len(keys))
+            table.extend({**found.columns, "profile": profile}, len(keys))
+        held = [found.contents_only() for found in measured]
         sources = np.full(len(keys), source, dtype=np.int64)
-        self._blocks.append(_Block(begin, measured, sources, lines[cut.firsts[places]]))
+        self._blocks.append(_Block(begin, held, sources, lines[cut.firsts[places]]))
 
     def rows_of(self, cut: Cut) -> Ints:
         """Return the row of each key of ``cut``, all of which are in the ledger."""

@@ -2,7 +2,7 @@
 
 from __future__ import annotations
 
-from dataclasses import dataclass
+from dataclasses import dataclass, replace
 
 import numpy as np
 
@@ -36,6 +36,9 @@ class RunTable:
     document_of: Ints
 
 
+_NO_RUNS = RunTable(np.zeros(0, np.int64), np.zeros((0, 0), np.int64), np.zeros(0, np.int64))
+
+
 @dataclass(frozen=True, slots=True)
 class LostCharacters:
     """Characters that did not come through whole, with one fate; arrays of shape (rows,).
@@ -59,6 +62,10 @@ class Measured:
     runs: RunTable
     broken: Broken
     lost: list[LostCharacters]
+
+    def contents_only(self) -> Measured:
+        """Return the same without columns and runs, which take most of the memory."""
+        return replace(self, columns={}, runs=_NO_RUNS, ids=self.ids.astype(np.int32))
 
 
 @dataclass(frozen=True, slots=True)

@@ -74,7 +74,8 @@ CATALOGUE: tuple[Figure, ...] = (
     _proportion("documents_with_byte_tokens", "Documents that hold a byte token."),
     _proportion("documents_with_control_strings", "Documents that spell a control token."),
     _proportion("truncated_documents", "Documents longer than the limit.", "limit"),
-    _proportion("lossless_documents", "Documents that come back exactly when their ids are decoded.",
+    _proportion("lossless_documents",
+                "Documents that come back exactly when their ids are decoded.",
                 "decoder", better="higher"),
 )  # fmt: skip
 

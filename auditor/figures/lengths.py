@@ -48,7 +48,7 @@ def _quantile(histogram: Histogram, n: int, share: tuple[int, int]) -> dict[str,
     }
     ends = [end for end, rank in (("lower", low), ("upper", high)) if rank is None]
     if ends:
-        found["note"] = f"too few documents for a {' and '.join(ends)} end at 95 %"
+        found["note"] = f"too few documents: no {' and '.join(ends)} end at 95 %"
     return found
 
 

@@ -120,11 +120,12 @@ def length(vocabulary: Json) -> list[Sentence]:
     """Answer: how long do documents become, and what would a limit cut?"""
     found = whole(vocabulary)["lengths"]
     p50, p95, p99 = (quantile(found["quantiles"][name]) for name in ("p50", "p95", "p99"))
-    overhead = plural(vocabulary["overhead"]["single"], "position")
+    overhead = vocabulary["overhead"]["single"]
+    template = plural(overhead, "of them is", "of them are") if overhead else "None of them is"
     half = f"Half of the documents take at most {p50} positions, 95% at most {p95}, 99% at most"
     lengths = f"{half} {p99}; the longest takes {count(found['maximum'])}."
     limit = vocabulary["limit"]["value"]
-    first = [(lengths,), (f"The template takes {overhead} of each.",)]
+    first = [(lengths,), (f"{template} the template's own.",)]
     heading = [(f"The limit is {plural(limit, 'position')}.",)] if limit is not None else []
     return [*first, *heading, *_said(_CUT, vocabulary)]
 
@@ -152,8 +153,8 @@ def words(vocabulary: Json) -> list[Sentence]:
 def set_aside(corpus: Json) -> list[Sentence]:
     """Answer: what was set aside?"""
     return [
-        _flaws(corpus["set_aside"], "set aside and not measured"),
-        _flaws(corpus["mended"], "mended and measured"),
+        _flaws(corpus["set_aside"], "set aside"),
+        _flaws(corpus["mended"], "mended"),
     ]
 
 

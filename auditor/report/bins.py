@@ -62,7 +62,7 @@ class Scale:
         """Return a few round lengths within the scale."""
         low, high = self.edges[0], self.edges[-1]
         if not self.doubling:
-            step = _round_step((high - low) / _MOST_TICKS)
+            step = max(1, int(round_step((high - low) / _MOST_TICKS)))
             return list(range(-(-max(low, 0) // step) * step, high + 1, step))
         first, last = max(low, 1).bit_length() - 1, high.bit_length() - 1
         every = -(-(last - first + 1) // _MOST_TICKS)
@@ -73,7 +73,7 @@ class Scale:
 def scale_for(shortest: int, longest: int) -> Scale:
     """Return a scale that shows lengths from ``shortest`` to ``longest``."""
     if longest - shortest <= _EVEN or longest <= 4 * shortest:
-        step = _round_step((longest - shortest + 1) / _EVEN)
+        step = max(1, int(round_step((longest - shortest + 1) / _EVEN)))
         first = (shortest - 1) // step * step
         return Scale(tuple(range(first, longest + step, step)), doubling=False)
     octaves = longest.bit_length() - max(shortest, 1).bit_length() + 1
@@ -90,9 +90,7 @@ def _doubling_edges(shortest: int, longest: int, parts: int) -> tuple[int, ...]:
     return tuple(edges[max(first, 0) : bisect_left(edges, longest) + 1])
 
 
-def _round_step(least: float) -> int:
-    """Return the smallest of 1, 2, 5, 10, 20, 50, … that is not below ``least``."""
-    if least <= 1:
-        return 1
-    power: int = 10 ** math.floor(math.log10(least))
-    return next(times * power for times in (1, 2, 5, 10) if times * power >= least)
+def round_step(least: float) -> float:
+    """Return the smallest of …, 0.1, 0.2, 0.5, 1, 2, 5, 10, … that is not below ``least``."""
+    power: float = 10.0 ** math.floor(math.log10(least))
+    return next((times * power for times in (1, 2, 5) if times * power >= least), 10 * power)

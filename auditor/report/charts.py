@@ -7,11 +7,13 @@ size; colours come from the page's style, so that it follows light and dark.
 from __future__ import annotations
 
 from collections.abc import Mapping, Sequence
+from dataclasses import dataclass
 from typing import Any
 
 from markupsafe import Markup, escape
+from rich.cells import cell_len, set_cell_size
 
-from auditor.report.bins import Bar, Scale
+from auditor.report.bins import Bar, Scale, round_step
 from auditor.report.formatting import clean, count, plural, value
 from auditor.report.slices import RANKED_BY, whole
 
@@ -22,8 +24,10 @@ _MARKS_HEIGHT, _BARS_HEIGHT = 62, 130
 _BASE = _MARKS_HEIGHT + _BARS_HEIGHT
 _LEAST_HEIGHT = 1.5
 _ROW, _GAP, _TOP = 17, 5, 24
-_PLOT_LEFT, _PLOT_RIGHT = 0.32, 0.86
-_LABEL_CELLS = 20
+_PLOT_RIGHT = 0.86
+# The style gives a drawing of slices this width at least, in pixels, and a character so many.
+_NARROWEST, _CELL = 480, 7.2
+_LABEL_CELLS = 22
 SHAPES = (
     ("circle", "M-4 0a4 4 0 1 0 8 0a4 4 0 1 0 -8 0z"),
     ("square", "M-3.5 -3.5h7v7h-7z"),
@@ -141,58 +145,73 @@ def cost(key: str, field: str, vocabularies: Sequence[Json], keys: Sequence[str]
     figures = {
         name: [own["slices"][name]["figures"][RANKED_BY] for own in vocabularies] for name in keys
     }
-    reach = max(
-        (figure["high"] or figure["value"] or 0.0 for row in figures.values() for figure in row),
-        default=0.0,
-    )
-    reach = reach or 1.0
+    ends = (figure["high"] or figure["value"] for row in figures.values() for figure in row)
+    plot = Plot(_label_width(keys), max((end for end in ends if end), default=1.0))
     height = len(vocabularies) * _ROW + _GAP
     bottom = _TOP + len(keys) * height
-    parts = [_grid(share, reach, bottom) for share in (0.0, 0.25, 0.5, 0.75, 1.0)]
+    parts = [_grid(tick, plot, bottom) for tick in plot.ticks()]
     for place, name in enumerate(keys):
-        parts += _slice(_TOP + place * height, name, figures[name], reach)
+        parts += _slice(_TOP + place * height, name, figures[name], plot)
     title = f"Tokens per word of {plural(len(keys), 'slice')} by {clean(field, 60)}"
     told = "A dot is the value, the line its 95% interval; the table below holds the numbers."
     return drawing(key, bottom + 6, title, told, *parts)
 
 
-def _grid(share: float, reach: float, bottom: int) -> Markup:
-    x = _percent(_plotted(share))
-    text = tag("text", f"{share * reach:,.2f}", x=x, y=13, text_anchor="middle")
+@dataclass(frozen=True, slots=True)
+class Plot:
+    """The part of a drawing that holds the dots: its left edge, and the value at its right one."""
+
+    left: float
+    reach: float
+
+    def place(self, number: float) -> str:
+        """Return where ``number`` stands, from 0 at the left edge."""
+        return _percent(self.left + max(0.0, number) / self.reach * (_PLOT_RIGHT - self.left))
+
+    def ticks(self) -> list[float]:
+        """Return round values from 0 to the right edge."""
+        step = round_step(self.reach / 6)
+        return [step * number for number in range(int(self.reach / step) + 1)]
+
+
+def _label_width(keys: Sequence[str]) -> float:
+    """Return the share of the narrowest drawing that the longest label takes."""
+    cells = max((cell_len(clean(key, 60)) for key in keys), default=0)
+    return (min(cells, _LABEL_CELLS) * _CELL + 2 * _CELL) / _NARROWEST
+
+
+def _grid(tick: float, plot: Plot, bottom: int) -> Markup:
+    x = plot.place(tick)
+    text = tag("text", f"{tick:g}", x=x, y=13, text_anchor="middle")
     return tag("line", x1=x, x2=x, y1=_TOP - 5, y2=bottom, class_="grid") + text
 
 
-def _plotted(share: float) -> float:
-    return _PLOT_LEFT + share * (_PLOT_RIGHT - _PLOT_LEFT)
-
-
-def _slice(top: int, name: str, figures: Sequence[Json], reach: float) -> list[Markup]:
+def _slice(top: int, name: str, figures: Sequence[Json], plot: Plot) -> list[Markup]:
     label = tag(
         "text", tag("title", clean(name, 60)), shortened(clean(name, 60), _LABEL_CELLS),
-        x=_percent(_PLOT_LEFT - 0.02), y=top + 13, text_anchor="end", direction="ltr",
-        unicode_bidi="plaintext", class_="name",
+        x=0, y=top + 13, class_="name",
     )  # fmt: skip
     rows = (
-        _dot(number, top + number * _ROW + 9, figure, reach, several=len(figures) > 1)
+        _dot(number, top + number * _ROW + 9, figure, plot, several=len(figures) > 1)
         for number, figure in enumerate(figures)
     )
     return [label, *rows]
 
 
-def _dot(number: int, y: int, figure: Json, reach: float, *, several: bool) -> Markup:
+def _dot(number: int, y: int, figure: Json, plot: Plot, *, several: bool) -> Markup:
     text = f"{letter(number)} {value(RANKED_BY, figure)}" if several else value(RANKED_BY, figure)
     label = tag("text", text, x=_percent(_PLOT_RIGHT + 0.02), y=y + 4)
     if figure["value"] is None:
         return label
     shape = tag("path", d=SHAPES[number % len(SHAPES)][1])
-    dot = tag("svg", shape, x=_percent(_plotted(figure["value"] / reach)), y=y, class_="dot")
-    return _line(y, figure, reach) + dot + label
+    dot = tag("svg", shape, x=plot.place(figure["value"]), y=y, class_="dot")
+    return _line(y, figure, plot) + dot + label
 
 
-def _line(y: int, figure: Json, reach: float) -> Markup:
+def _line(y: int, figure: Json, plot: Plot) -> Markup:
     if figure["low"] is None or figure["high"] is None:
         return Markup("")
-    ends = (_percent(_plotted(max(0.0, figure[end]) / reach)) for end in ("low", "high"))
+    ends = (plot.place(figure[end]) for end in ("low", "high"))
     return tag("line", y1=y, y2=y, class_="interval", **dict(zip(("x1", "x2"), ends, strict=True)))
 
 
@@ -204,6 +223,4 @@ def letter(number: int) -> str:
 
 def shortened(text: str, cells: int) -> str:
     """Return ``text`` cut to a width of ``cells``, wide characters counted twice."""
-    from rich.cells import cell_len, set_cell_size
-
     return text if cell_len(text) <= cells else set_cell_size(text, cells - 1).rstrip() + "…"

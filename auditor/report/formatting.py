@@ -77,8 +77,10 @@ def _decimals(name: str, figure: Json) -> int:
 
 
 def _number(number: float, decimals: int, *, share: bool) -> str:
-    """Return a number that is never rounded to 0 %, nor to 100 %, when it is neither."""
+    """Return a number that reads 0 or 100 % only when it is exactly that."""
     sign, scale = ("%", 100) if share else ("", 1)
+    if number == 0 or (share and number == 1):
+        return f"{number * scale:.0f}{sign}"
     shown = f"{number * scale:,.{decimals}f}"
     least = f"{10**-decimals:.{decimals}f}"
     if number > 0 and not any(digit in shown for digit in "123456789"):
@@ -102,9 +104,9 @@ def clean(text: str, longest: int = 160) -> str:
     return str(_LINE_BREAKS.sub(lambda m: f"⟨U+{ord(m[0]):04X}⟩", tables.printable(shown)))
 
 
-def plural(number: int, noun: str) -> str:
-    """Return the number with its noun, which takes an s unless there is one."""
-    return f"{count(number)} {noun}{'' if number == 1 else 's'}"
+def plural(number: int, noun: str, several: str | None = None) -> str:
+    """Return the number with its noun, which takes an s, or is ``several``, unless it is one."""
+    return f"{count(number)} {noun if number == 1 else several or noun + 's'}"
 
 
 def plain_name(name: str) -> str:

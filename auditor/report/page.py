@@ -65,6 +65,7 @@ def _environment() -> Environment:
         "interval_or_note": _interval_or_note,
         "length_value": lambda number: f"{number:,.1f}" if number % 1 else f"{int(number):,}",
         "marked": marked,
+        "noted": lambda held, names: any(held[name]["note"] for name in held if name in names),
         "plural": formatting.plural,
         "quantile": formatting.quantile,
         "ranged": lambda figure, name: formatting.ranged(name, figure),
@@ -117,7 +118,8 @@ def _scale(vocabularies: Sequence[Json]) -> bins.Scale:
     longest = max(lengths["maximum"] for lengths in found)
     limits = [own["limit"]["value"] for own in vocabularies]
     near = [limit for limit in limits if limit is not None and limit <= _LIMIT_DRAWN * longest]
-    return bins.scale_for(min(lengths["minimum"] for lengths in found), max([longest, *near]))
+    shortest = min(lengths["minimum"] for lengths in found)
+    return bins.scale_for(min([shortest, *near]), max([longest, *near]))
 
 
 def _under_lengths(vocabulary: Json, scale: bins.Scale) -> str:

@@ -130,29 +130,40 @@ def _slice_table(vocabularies: Sequence[Json], ranked: list[str]) -> RenderableT
     least = ranked[_MOST_COSTLY:][-_LEAST_COSTLY:]
     several = len(vocabularies) > 1
     table = _table()
-    longest = 18 if several else 32
-    table.add_column("slice", max_width=longest, overflow="ellipsis", no_wrap=True)
-    table.add_column("documents", justify="right", no_wrap=True)
+    table.add_column("slice", max_width=18 if several else 32, overflow="ellipsis", no_wrap=True)
+    if documents := len(vocabularies) < _SIDE_BY_SIDE:
+        table.add_column("documents", justify="right", no_wrap=True)
+    table.expand = several
     for vocabulary in vocabularies:
-        name = clean(vocabulary["name"], 60)
-        table.add_column(name if several else "tokens per word", overflow="fold")
+        header = _name(vocabulary) if several else "tokens per word"
+        table.add_column(header, overflow="fold", ratio=1 if several else None)
     for key in most:
-        table.add_row(*_slice_row(key, vocabularies))
+        table.add_row(*_slice_row(key, vocabularies, documents=documents))
     if between := len(ranked) - len(most) - len(least):
-        table.add_row(Text("…"), Text(f"{count(between)} more"))
+        table.add_row(Text(f"… {count(between)} more"))
     for key in least:
-        table.add_row(*_slice_row(key, vocabularies))
+        table.add_row(*_slice_row(key, vocabularies, documents=documents))
     return table
 
 
-def _slice_row(key: str, vocabularies: Sequence[Json]) -> Iterable[RenderableType]:
+def _slice_row(
+    key: str, vocabularies: Sequence[Json], *, documents: bool
+) -> Iterable[RenderableType]:
     yield Text(clean(key, 60))
-    yield count(vocabularies[0]["slices"][key]["counts"]["documents"])
+    if documents:
+        yield count(vocabularies[0]["slices"][key]["counts"]["documents"])
     for vocabulary in vocabularies:
         figures = vocabulary["slices"][key]["figures"]
         cut = value("truncated_documents", figures["truncated_documents"])
         told = f"; {cut} cut" if anything_cut(vocabulary, [key]) else ""
-        yield Text(ranged_or_why(RANKED_BY, figures[RANKED_BY]) + told)
+        cost = ranged_or_why(RANKED_BY, figures[RANKED_BY])
+        yield Text(cost + told if len(vocabularies) == 1 else _stacked(cost, told))
+
+
+def _stacked(cost: str, told: str) -> str:
+    """Return the interval below the value, for a narrow column."""
+    number, bracket, rest = cost.partition(" (")
+    return f"{number}{told}\n{bracket[1:]}{rest}"
 
 
 def _table() -> Table:
@@ -162,10 +173,11 @@ def _table() -> Table:
 def _words(worst: WorstWords) -> Iterable[RenderableType]:
     for name, rows in worst:
         table = _table()
-        table.add_column(clean(name, 40) if len(worst) > 1 else "word", ratio=1)
+        title = Text(clean(name, 40) if len(worst) > 1 else "word")
+        table.add_column(title, ratio=1, no_wrap=True, overflow="ellipsis")
         table.add_column("times", justify="right", no_wrap=True)
         table.add_column("extra tokens", justify="right", no_wrap=True)
-        table.add_column("broken as", ratio=2)
+        table.add_column("broken as", ratio=2, no_wrap=True, overflow="ellipsis")
         for row in word_rows([(name, rows[:_WORDS])]).to_dict("records"):
             word, broken = (Text(clean(row[column], 60)) for column in ("word", "broken"))
             table.add_row(word, count(row["count"]), count(row["extra_tokens"]), broken)

@@ -11,7 +11,7 @@ from pathlib import Path
 from typing import Any
 
 from auditor.corpus import Batch, Fields, Source, find_sources, read, resolve_fields
-from auditor.encoding.documents import SeparationFault, Tale
+from auditor.encoding.documents import SeparationError, Tale
 from auditor.errors import CorpusError, SettingsError
 from auditor.report import contract, page, tables
 from auditor.runs.assembling import assemble
@@ -66,7 +66,7 @@ def assess(
     reading = _Reading(sources, fields, how, progress)
     try:
         return _audited(plan, reading, out, overwrite=overwrite, began=began)
-    except SeparationFault as fault:
+    except SeparationError as fault:
         if any(source.name == "-" for source in sources):
             raise
         again = replace(plan, whole=True)

@@ -132,9 +132,7 @@ def empty_documents(plan: Plan, facts: list[VocabularyFacts]) -> list[DocumentTa
     """Return empty tallies of documents for each vocabulary."""
     clustered = plan.read.origin is not None
     return [
-        DocumentTallies.empty(
-            overhead=own.overhead[0], graphemes=plan.graphemes, origins=clustered
-        )
+        DocumentTallies.empty(overhead=own.overhead[0], graphemes=plan.graphemes, origins=clustered)
         for own in facts
     ]
 

@@ -74,7 +74,7 @@ def from_vocab_txt(path: Path) -> tuple[Description, list[str]]:
         entries.pop()
     vocab = {entry: number for number, entry in enumerate(entries)}
     folds, reason = _folds_case(path.parent, entries)
-    unknown = next((name for name in ("[UNK]", "<unk>") if name in vocab), None)
+    unknown = _unknown_entry(vocab)
     if unknown is None:
         raise VocabularyError(
             "no [UNK] entry: a WordPiece vocabulary cannot do without.",
@@ -127,7 +127,7 @@ def _added(number: int, content: str) -> Description:
 
 
 def from_vocab_json(path: Path) -> tuple[Description, list[str]]:
-    """Return the description of `vocab.json`, with `merges.txt` beside it (BPE) or alone (words)."""
+    """Return the description of `vocab.json`, with `merges.txt` beside it or alone (words)."""
     vocab = read_json(path)
     if not isinstance(vocab, dict) or not all(isinstance(number, int) for number in vocab.values()):
         raise VocabularyError("not a JSON object of entries and ids.", where=str(path))
@@ -145,14 +145,15 @@ def from_vocab_json(path: Path) -> tuple[Description, list[str]]:
         "trim_offsets": False,
         "use_regex": True,
     }
+    ending = {"type": "BPEDecoder", "suffix": suffix} if suffix else None
     description: Description = {
         "version": "1.0",
         "added_tokens": [_added(vocab[name], name) for name in special],
         "pre_tokenizer": split if byte_level else {"type": "WhitespaceSplit"},
-        "decoder": split if byte_level else ({"type": "BPEDecoder", "suffix": suffix} if suffix else None),
+        "decoder": split if byte_level else ending,
         "model": {
             "type": "BPE", "vocab": vocab, "merges": _read_merges(merges), "dropout": None,
-            "unk_token": None if byte_level else next((u for u in ("<unk>", "[UNK]") if u in vocab), None),
+            "unk_token": None if byte_level else _unknown_entry(vocab),
             "end_of_word_suffix": suffix,
         },
     }  # fmt: skip
@@ -164,8 +165,12 @@ def from_vocab_json(path: Path) -> tuple[Description, list[str]]:
     return description, [f"vocab.json and merges.txt name no rules: read as {kind}, overhead 0"]
 
 
+def _unknown_entry(vocab: dict[str, int]) -> str | None:
+    return next((name for name in ("[UNK]", "<unk>") if name in vocab), None)
+
+
 def _words_only(vocab: dict[str, int], path: Path) -> Description:
-    unknown = next((name for name in ("[UNK]", "<unk>") if name in vocab), None)
+    unknown = _unknown_entry(vocab)
     if unknown is None:
         raise VocabularyError(
             "vocab.json has no merges.txt beside it and no [UNK] or <unk> entry.",

@@ -176,9 +176,8 @@ def _disagreements(opened: _Opened, forms: list[Form], spec: VocabularySpec) -> 
         try:
             theirs = _open_form(other, replace(spec, limit=None))
         except VocabularyError as fault:
-            notes.append(
-                f"{other.path.name} lies beside {first.path.name} and does not open: {fault.message}"
-            )
+            beside = f"{other.path.name} lies beside {first.path.name}"
+            notes.append(f"{beside} and does not open: {fault.message}")
             continue
         differing = _first_difference(opened.engine, theirs.engine)
         verdict = (

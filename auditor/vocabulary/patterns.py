@@ -162,9 +162,7 @@ def _sample() -> tuple[str, ...]:
     return tuple(dict.fromkeys(found))
 
 
-_CATEGORIES = (
-    "Lu Ll Lt Lm Lo Mn Mc Me Nd Nl No Pc Pd Ps Pe Pi Pf Po Sm Sc Sk So Zs Zl Zp Cc Cf Co Cn"
-).split()
+_CATEGORIES = regex.findall("..", "LuLlLtLmLoMnMcMeNdNlNoPcPdPsPePiPfPoSmScSkSoZsZlZpCcCfCoCn")
 
 
 def _covers_everything(pattern: str) -> bool:

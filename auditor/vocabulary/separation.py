@@ -40,9 +40,7 @@ WHITESPACE_AFTER_WORDS = " \t\r\n"
 _SPLITTING = frozenset({"BertPreTokenizer", "Whitespace", "WhitespaceSplit"})
 _LOCAL_SPLITTERS = frozenset({"Digits", "Punctuation"})
 # The pattern of the byte-level pre-tokeniser (openai/gpt-2, src/encoder.py).
-_BYTE_LEVEL = (
-    r"'s|'t|'re|'ve|'m|'ll|'d| ?\p{L}+| ?\p{N}+| ?[^\s\p{L}\p{N}]+|\s+(?!\S)|\s+"
-)
+_BYTE_LEVEL = r"'s|'t|'re|'ve|'m|'ll|'d| ?\p{L}+| ?\p{N}+| ?[^\s\p{L}\p{N}]+|\s+(?!\S)|\s+"
 
 
 @dataclass(frozen=True)
@@ -149,7 +147,7 @@ def _tokenizers(engine: TokenizersEngine, entries: list[str | None]) -> Separati
 
 
 def _splits(steps: list[dict[str, Any]], proves: Callable[[str], bool]) -> bool:
-    """Return whether every step keeps to parts and one of them always splits, as ``proves`` says."""
+    """Return whether every step keeps to parts and one always splits, as ``proves`` says."""
     answers = [_step_splits(step, proves) for step in steps]
     return all(answer is not None for answer in answers) and any(answers)
 

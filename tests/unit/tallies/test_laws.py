@@ -175,7 +175,7 @@ def test_cutting_the_corpus_changes_nothing(kind, rows, seed):
 @every_tally
 @given(rows=documents)
 def test_saving_and_loading_changes_nothing(kind, rows):
-    """Counts survive the trip through JSON, whose integers have no bound in the standard library."""
+    """Counts survive the trip through JSON, whose integers have no bound here."""
     tally, loaded = filled(kind, rows), TALLIES[kind][0]()
     loaded.fill(json.loads(json.dumps(tally.counts())))
     assert loaded == tally
