@@ -18,8 +18,8 @@ DAMAGED = "compressed stream is damaged"
 _PIECE = 1 << 18
 _READ = 1 << 16
 # Four bytes of zstd can stand for 128 KiB and its library knows no bound on what it returns, so
-# that little is fed at a time: at most 32 MiB come back, a few KiB as a rule.
-_ZSTD_FEED = 1 << 10
+# that little is fed at a time: at most 16 MiB come back, a few KiB as a rule.
+_ZSTD_FEED = 1 << 9
 
 
 class Bytes(Protocol):

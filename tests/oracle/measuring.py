@@ -152,8 +152,8 @@ class DocumentMeasurer:
             run_at.update(dict.fromkeys(range(run.start, run.stop), run))
         for token in tokens:
             touched = {run_at.get(place) for place in token.positions}
-            if len(touched) == 1 and (run := touched.pop()) is not None:
-                rows[run.kind].tokens += 1
+            if len(touched) == 1 and (inside := touched.pop()) is not None:
+                rows[inside.kind].tokens += 1
         return rows
 
 

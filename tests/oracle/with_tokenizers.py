@@ -147,7 +147,7 @@ def _normaliser_without_spelling(part: Json | None) -> Any:
 
 
 def _unknown_id(model: Json, ids: dict[str, int]) -> int | None:
-    if model["type"] == "Unigram":
-        return model.get("unk_id")
+    if "unk_id" in model:  # Unigram names it by number, the other models by content
+        return model["unk_id"]
     content = model.get("unk_token")
     return None if content is None else ids.get(content)
