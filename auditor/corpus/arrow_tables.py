@@ -10,7 +10,7 @@ import pyarrow as pa
 
 from auditor.corpus import columns
 from auditor.corpus.columns import FAULTS, RowsAtOnce
-from auditor.corpus.rows import NOT_MENDED, Damage, Row
+from auditor.corpus.rows import NOT_MENDED, Row
 from auditor.corpus.sources import Source
 from auditor.corpus.spooling import Sequential, random_access
 from auditor.corpus.streams import Stream, read_head
@@ -42,7 +42,7 @@ def arrow_rows(
         if not stream.damage:
             yield columns.damaged(done)
     if stream.damage:
-        yield done + 1, Damage(stream.damage), NOT_MENDED
+        yield done + 1, stream.damage, NOT_MENDED
 
 
 def _batches(source: Source, stream: Stream) -> Iterator[pa.RecordBatch]:

@@ -10,10 +10,13 @@ from typing import Literal, Protocol
 
 import zstandard
 
+from auditor.corpus.rows import Damage
+
 Compression = Literal["gz", "zst", "bz2", "xz"]
 
-ENDS_EARLY = "compressed stream ends early"
-DAMAGED = "compressed stream is damaged"
+ENDS_EARLY = Damage("compressed stream ends early")
+# Not every compression notices a damage at its place: some text comes out before it is found.
+DAMAGED = Damage("compressed stream is damaged", "documents read before this may be wrong")
 
 _PIECE = 1 << 18
 _READ = 1 << 16
@@ -121,7 +124,7 @@ class Expanded:
     """The expanded bytes of ``raw``; ``damage`` says after the end why it came too early."""
 
     def __init__(self, raw: Bytes, compression: Compression) -> None:
-        self.damage: str | None = None
+        self.damage: Damage | None = None
         self._pieces = self._expand(raw, _EXPANDERS[compression])
         self._ready = b""
 

@@ -50,6 +50,14 @@ class _PhysicalLines:
             raise _TooLongError
         return line
 
+    def look_at_first(self) -> str | None:
+        """Return the first line, ``None`` without one; it comes again."""
+        line = next(self, None)
+        if line is not None:
+            self.given = 0
+            self._again.append(line)
+        return line
+
     def begin_row(self) -> int:
         """Forget the last row; return the number of the line that comes next."""
         self.row.clear()
@@ -91,7 +99,7 @@ def delimited_rows(stream: Utf8, name: str, delimiter: str | None) -> Iterator[R
     """
     csv.field_size_limit(_LONGEST_ROW * 4)
     lines = _PhysicalLines(stream)
-    first = next(lines, None)
+    first = lines.look_at_first()
     if first is not None:
         delimiter = delimiter or next((sign for sign in _DELIMITERS if sign in first), ",")
         header = _header(lines, delimiter, name)
@@ -107,11 +115,6 @@ def delimited_rows(stream: Utf8, name: str, delimiter: str | None) -> Iterator[R
 
 
 def _header(lines: _PhysicalLines, delimiter: str, name: str) -> list[str]:
-    # The first line was looked at; it is handed out again to the parser.
-    lines.row.insert(0, "")
-    lines.given += 1
-    lines.keep_first_line_only()
-    lines.given -= 1
     found = next(_parsed(lines, delimiter, None), None)
     header = found[1] if found else []
     if isinstance(header, Damage):

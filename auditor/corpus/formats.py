@@ -50,7 +50,7 @@ def decide(name: str, head: bytes, *, whole: bool) -> Format | None:
     body = head.removeprefix(b"\xef\xbb\xbf").lstrip(_BLANK)
     if named in {"parquet", "arrow", None}:
         array = _array_of_objects(body, whole=whole)
-        return "json" if array else "jsonl" if _json_lines(body, whole=whole) else None
+        return "json" if array else "jsonl" if _json_lines(body, whole=whole) else named
     if named == "jsonl":
         return "json" if _array_of_objects(body, whole=whole) else "jsonl"
     if named == "json":
@@ -63,7 +63,7 @@ def _table(head: bytes) -> Format | None:
     if head.startswith((b"PAR1", b"PARE")):
         return "parquet"
     # The schema message of a stream: mark, length of the metadata, a flat buffer (Arrow's format).
-    stream = head.startswith(_STREAM_MARK) and head[6:8] == b"\0\0"
+    stream = head.startswith(_STREAM_MARK) and head[7:8] == b"\0"
     return "arrow" if stream or head.startswith((b"ARROW1", b"FEA1")) else None
 
 

@@ -76,14 +76,14 @@ class _Records:
         scanner = self._scanner
         while bracket := scanner.step():
             if scanner.take().strip():
-                yield self._damage(NOT_JSON)
+                yield self._damaged(Damage(NOT_JSON))
             if bracket == b"[":
                 yield from self._array()
             elif bracket == b"{":
                 yield from self._object()
         rest = bool(scanner.data[scanner.kept :].strip())
         if not self._ended_early and (rest or self._stream.damage):
-            yield self._damage(self._stream.damage or NOT_JSON)
+            yield self._damaged(self._stream.damage or Damage(NOT_JSON))
 
     def _array(self) -> Iterator[Row]:
         scanner, depth = self._scanner, 0
@@ -152,14 +152,14 @@ class _Records:
         self._number += 1
         return (self._number, *parse(raw))
 
-    def _damage(self, reason: str) -> Row:
+    def _damaged(self, damage: Damage) -> Row:
         self._number += 1
-        return self._number, Damage(reason), NOT_MENDED
+        return self._number, damage, NOT_MENDED
 
     def _ended(self) -> Row:
         self._ended_early = True
         self._scanner.kept = self._scanner.at = len(self._scanner.data)
-        return self._damage(self._stream.damage or "JSON ends early")
+        return self._damaged(self._stream.damage or Damage("JSON ends early"))
 
     def _several(self) -> CorpusError:
         return CorpusError(

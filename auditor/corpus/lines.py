@@ -21,7 +21,7 @@ from collections.abc import Iterator
 from typing import NamedTuple
 
 from auditor.corpus.options import Unit
-from auditor.corpus.rows import NOT_MENDED, Damage, Mend, Row, decoded
+from auditor.corpus.rows import NOT_MENDED, Mend, Row, decoded
 from auditor.corpus.streams import Utf8, read_all
 
 _BLOCK = 1 << 18
@@ -52,7 +52,7 @@ def whole_lines(stream: Utf8) -> Iterator[Lines | Row]:
             number += content.count(b"\n")
             pending = [block[cut:]] if cut < len(block) else []
     if stream.damage:
-        yield number, Damage(stream.damage), NOT_MENDED
+        yield number, stream.damage, NOT_MENDED
     elif pending:
         yield Lines(number, b"".join(pending))
 
@@ -112,6 +112,6 @@ def _joined(began: int, held: list[bytes]) -> Row:
 def _file(stream: Utf8) -> Iterator[Row]:
     content = read_all(stream)
     if stream.damage:
-        yield 1, Damage(stream.damage), NOT_MENDED
+        yield 1, stream.damage, NOT_MENDED
     else:
         yield (1, *decoded(content))

@@ -8,12 +8,13 @@ import pyarrow as pa
 import pyarrow.parquet as pq
 
 from auditor.corpus.columns import FAULTS, RowsAtOnce, damaged, rows_of_batch, top_names
-from auditor.corpus.rows import NOT_MENDED, Damage, Row
+from auditor.corpus.rows import NOT_MENDED, Row
 from auditor.corpus.sources import Source
 from auditor.corpus.spooling import random_access
 from auditor.corpus.streams import Stream
 
-_READ_BUFFER = 1 << 20
+# Read ahead, the library would hold a whole row group: the whole file, often.
+_READ_BUFFER = 1 << 16
 
 
 def parquet_rows(
@@ -22,11 +23,11 @@ def parquet_rows(
     """Yield a row for every row of the table, its record the ``wanted`` fields (``None``: all)."""
     with random_access(stream) as file:
         if stream.damage:
-            yield 1, Damage(stream.damage), NOT_MENDED
+            yield 1, stream.damage, NOT_MENDED
             return
         done = 0
         try:
-            with pq.ParquetFile(file, buffer_size=_READ_BUFFER) as table:
+            with pq.ParquetFile(file, buffer_size=_READ_BUFFER, pre_buffer=False) as table:
                 for batch in _batches(table, at_once, wanted):
                     yield from rows_of_batch(batch, done + 1)
                     done += batch.num_rows
@@ -43,4 +44,5 @@ def _batches(
     facts = table.metadata
     size = sum(facts.row_group(i).total_byte_size for i in range(facts.num_row_groups))
     columns = top_names(table.schema_arrow.names, wanted)
-    yield from table.iter_batches(at_once.of(facts.num_rows, size), columns=columns)
+    rows = at_once.of(facts.num_rows, size)
+    yield from table.iter_batches(rows, columns=columns, use_threads=False)

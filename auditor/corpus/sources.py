@@ -6,7 +6,6 @@ import difflib
 import glob
 import os
 import stat
-import sys
 from collections.abc import Iterator, Sequence
 from contextlib import contextmanager
 from pathlib import Path
@@ -109,9 +108,9 @@ def find_sources(arguments: Sequence[str]) -> list[Source]:
 
 def _source(path: Path | None) -> Source:
     if path is None:
-        return Source(None, Pipe(sys.stdin.buffer, _STANDARD_INPUT))
+        return Source(None, Pipe(None, _STANDARD_INPUT))
     if not stat.S_ISREG(path.stat().st_mode):
-        return Source(path, Pipe(path.open("rb"), str(path)))
+        return Source(path, Pipe(path, str(path)))
     source = Source(path)
     if formats.by_suffix(path.name) is None:
         source.format()

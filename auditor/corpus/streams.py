@@ -3,10 +3,12 @@
 from __future__ import annotations
 
 import codecs
+import sys
 from pathlib import Path
 from typing import BinaryIO
 
 from auditor.corpus.compression import Bytes, Compression, Expanded
+from auditor.corpus.rows import Damage
 from auditor.errors import CorpusError
 
 # A byte that occurs nowhere in UTF-8: it marks what could not be decoded, so that the record it
@@ -16,12 +18,13 @@ _UTF_16_MARKS = (b"\xff\xfe", b"\xfe\xff")
 
 
 class Pipe:
-    """Standard input or a named pipe: what a first look takes from it is kept for the reading."""
+    """A named pipe, or standard input: what a first look takes is kept for the reading."""
 
-    def __init__(self, handle: BinaryIO, name: str) -> None:
-        self._handle = handle
+    def __init__(self, path: Path | None, name: str) -> None:
+        self.kept = bytearray()
+        self._path = path
         self._name = name
-        self._kept = bytearray()
+        self._handle: BinaryIO | None = None
         self._spent = False
 
     def reader(self, *, keep: bool) -> PipeReader:
@@ -29,35 +32,48 @@ class Pipe:
         if self._spent:
             raise CorpusError("a pipe can be read once only.", where=self._name)
         self._spent = not keep
-        return PipeReader(self._handle, self._kept, keep=keep)
+        return PipeReader(self, keep=keep)
+
+    def take(self, size: int) -> bytes:
+        """Return up to ``size`` bytes that nobody has taken yet."""
+        if self._handle is None:
+            self._handle = sys.stdin.buffer if self._path is None else self._path.open("rb")
+        return self._handle.read(size)
+
+    def close(self) -> None:
+        """Close the pipe, but for standard input, which is not ours."""
+        if self._handle is not None and self._path is not None:
+            self._handle.close()
 
 
 class PipeReader:
     """Reads what was kept of a pipe, then the pipe."""
 
-    def __init__(self, handle: BinaryIO, kept: bytearray, *, keep: bool) -> None:
-        self._handle = handle
-        self._kept = kept
+    def __init__(self, pipe: Pipe, *, keep: bool) -> None:
+        self._pipe = pipe
         self._keep = keep
         self._offset = 0
 
     def read(self, size: int, /) -> bytes:
         """Return up to ``size`` bytes, none at the end."""
-        if self._offset < len(self._kept):
-            found = bytes(self._kept[self._offset : self._offset + size])
+        kept = self._pipe.kept
+        if self._offset < len(kept):
+            found = bytes(kept[self._offset : self._offset + size])
+            self._offset += len(found)
+        elif self._keep:
+            found = self._pipe.take(size)
+            kept += found
+            self._offset += len(found)
         else:
-            found = self._handle.read(size)
-            if self._keep:
-                self._kept += found
-            else:
-                self._kept.clear()
-                self._offset = 0
-                return found
-        self._offset += len(found)
+            kept.clear()
+            self._offset = 0
+            found = self._pipe.take(size)
         return found
 
     def close(self) -> None:
-        """Leave the pipe open: it is not ours."""
+        """Close the pipe after the last reading."""
+        if not self._keep:
+            self._pipe.close()
 
 
 class Stream:
@@ -74,7 +90,7 @@ class Stream:
         self._expanded = None if compression is None else Expanded(_Counted(self), compression)
 
     @property
-    def damage(self) -> str | None:
+    def damage(self) -> Damage | None:
         """The reason for which a compressed stream ended, ``None`` when it came to its end."""
         return None if self._expanded is None else self._expanded.damage
 
@@ -117,7 +133,7 @@ class Utf8:
             self._decoder = codecs.getincrementaldecoder(encoding)(errors=_MARK)
 
     @property
-    def damage(self) -> str | None:
+    def damage(self) -> Damage | None:
         """Why the stream ended too early, ``None`` when it did not."""
         return self._stream.damage
 

@@ -49,13 +49,15 @@ def test_everything_before_the_cut_is_read(suffix, tmp_path):
 
 @pytest.mark.parametrize("suffix", PACKED)
 def test_a_damaged_stream_is_told(suffix, tmp_path):
-    """Bytes in the middle that are no longer what they were end the reading there."""
+    """Bytes in the middle that are no longer what they were end the reading near there."""
     content = bytearray(PACK[suffix](CONTENT))
     middle = len(content) // 2
     content[middle : middle + 64] = b"\xff" * 64
     found = read_bytes(tmp_path, "a.txt", bytes(content))
-    assert found.set_aside[-1].reason in {"compressed stream is damaged", "compressed stream ends early"}
-    assert len(found.set_aside) == 1
+    [flaw] = found.set_aside
+    assert flaw.reason in {"compressed stream is damaged", "compressed stream ends early"}
+    sound = min(len(found.texts), len(LINES) // 3)
+    assert found.texts[:sound] == LINES[:sound]
 
 
 @pytest.mark.parametrize("suffix", [".jsonl", ".json", ".csv"])

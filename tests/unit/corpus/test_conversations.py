@@ -73,13 +73,15 @@ def test_a_conversation_that_cannot_be_rendered_is_set_aside(tmp_path):
     found = conversation(tmp_path, TALK[1:], render=render)
     assert found.texts == ["fine"]
     [flaw] = found.set_aside
-    assert (flaw.reason, flaw.detail) == ("conversation cannot be rendered", "roles must take turns")
+    assert flaw.reason == "conversation cannot be rendered"
+    assert flaw.detail == "roles must take turns"
 
 
 def test_another_field_of_messages_is_named(tmp_path):
     """What it holds decides, not its name."""
     content = json_lines([{"talk": TALK, "title": "a"}])
-    assert read_bytes(tmp_path, "a.jsonl", content, text=("talk",)).texts == ["Is the buoy lit?\nNo."]
+    found = read_bytes(tmp_path, "a.jsonl", content, text=("talk",))
+    assert found.texts == ["Is the buoy lit?\nNo."]
 
 
 def test_a_usual_name_of_text_comes_before_messages(tmp_path):

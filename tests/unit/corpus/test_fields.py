@@ -30,7 +30,7 @@ def test_a_usual_name_without_text_does_not_count(tmp_path):
 
 def test_several_usual_names_are_listed(tmp_path):
     """The error names them and the option."""
-    with pytest.raises(CorpusError, match="text, body. Name one with --text"):
+    with pytest.raises(CorpusError, match=r"text, body\. Name one with --text"):
         resolve(tmp_path, {"text": "a", "body": "b"})
 
 
@@ -69,7 +69,8 @@ def test_named_fields_are_joined_in_their_order(tmp_path):
     rows = [{"query": "a", "passage": "b"}, {"query": "c"}, {"query": "d", "passage": ""}]
     found = read_bytes(tmp_path, "a.jsonl", json_lines(rows), text=("passage", "query"))
     assert found.texts == ["b\na", "\nd"]
-    assert [(flaw.reason, flaw.detail) for flaw in found.set_aside] == [("field missing", "passage")]
+    [flaw] = found.set_aside
+    assert (flaw.line, flaw.reason, flaw.detail) == (2, "field missing", "passage")
 
 
 @pytest.mark.parametrize("option", ["text", "by", "origin", "identifier"])

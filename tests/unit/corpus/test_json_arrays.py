@@ -14,9 +14,12 @@ from auditor.errors import CorpusError
 from tests.unit.corpus.writing import read_bytes
 
 LEAVES = st.none() | st.booleans() | st.integers(-9, 9) | st.text('a"\\{}[],:é\n', max_size=6)
+KEYS = st.text("ab{", max_size=3)
 VALUES = st.recursive(
-    LEAVES, lambda inner: st.lists(inner, max_size=3) | st.dictionaries(st.text("ab{", max_size=3), inner, max_size=3)
-)  # fmt: skip
+    LEAVES,
+    lambda inner: st.lists(inner, max_size=3) | st.dictionaries(KEYS, inner, max_size=3),
+)
+RECORDS = st.lists(st.dictionaries(KEYS, VALUES), min_size=1)
 
 
 class Dribble:
@@ -42,7 +45,7 @@ def test_any_array_is_taken_apart_as_the_library_does(values, step, indent):
     assert [row[0] for row in rows] == list(range(1, len(values) + 1))
 
 
-@given(st.lists(st.dictionaries(st.text("ab", max_size=2), VALUES), min_size=1), VALUES, st.integers(1, 9))
+@given(RECORDS, VALUES, st.integers(1, 9))
 def test_an_object_that_holds_one_array_gives_its_records(records, other, step):
     """Whatever stands beside the array, before or behind it, is passed over."""
     kept = {} if isinstance(other, list) and other and isinstance(other[0], dict) else {"x": other}

@@ -15,7 +15,7 @@ FLAWED = [
     (b'{"text": "ma\tst"}', "not valid JSON"),
     (b"\x0c", "not valid JSON"),
     (b"[" * 100_000, "not valid JSON"),
-    (b'{"text": "a", "n": ' + b"9" * 5000 + b'} x', "not valid JSON"),
+    (b'{"text": "a", "n": ' + b"9" * 5000 + b"} x", "not valid JSON"),
     (b"null", "not an object"),
     (b"17", "not an object"),
     (b'"mast"', "not an object"),

@@ -2,14 +2,16 @@
 
 from __future__ import annotations
 
-import datetime
+import datetime as dt
 import io
+import random
 
 import pyarrow as pa
 import pyarrow.feather
 import pyarrow.parquet as pq
 import pytest
 
+from auditor.corpus import ReadOptions, find_sources, read, resolve_fields
 from auditor.errors import CorpusError
 from tests.unit.corpus.writing import arrow, parquet, read_back, read_bytes
 
@@ -73,7 +75,7 @@ def test_invalid_utf_8_in_a_column_of_text_is_mended(write_table, kind, tmp_path
 
 def test_dates_and_decimals_make_slice_keys(tmp_path):
     """Values that JSON has not are spelled as text."""
-    path = write(tmp_path / "a.parquet", {"text": ["a"], "day": [datetime.date(2031, 5, 4)]})
+    path = write(tmp_path / "a.parquet", {"text": ["a"], "day": [dt.date(2031, 5, 4)]})
     assert read_back(path, by=("day",)).column("day") == ['day="2031-05-04"']
 
 
@@ -95,7 +97,8 @@ def test_a_parquet_file_damaged_in_the_middle_gives_what_came_before(tmp_path):
     """The row groups before the damage are measured."""
     rows = [{"text": "%064x" % (n * 7919**9)} for n in range(9)]
     content = bytearray(parquet(rows))
-    start = pq.ParquetFile(io.BytesIO(content)).metadata.row_group(1).column(0).dictionary_page_offset
+    facts = pq.ParquetFile(io.BytesIO(content)).metadata
+    start = facts.row_group(1).column(0).dictionary_page_offset
     content[start : start + 40] = b"\xff" * 40
     found = read_bytes(tmp_path, "a.parquet", bytes(content), batch_bytes=64)
     assert found.texts == [row["text"] for row in rows[:3]]
@@ -127,6 +130,16 @@ def test_offsets_outside_the_data_are_damage(tmp_path):
     assert found.places == [(4, "table is damaged")]
 
 
+def test_an_empty_table_file_is_damaged_and_not_unknown(tmp_path):
+    """A failed copy is told as a record that was set aside, beside files that are whole."""
+    (tmp_path / "a.parquet").write_bytes(b"")
+    (tmp_path / "b.arrow").write_bytes(b"")
+    found = read_bytes(tmp_path, "c.parquet", parquet(ROWS))
+    assert found.texts == [row["text"] for row in ROWS]
+    found = read_back(tmp_path)
+    assert found.places == [(1, "table is damaged")] * 2
+
+
 def test_the_first_version_of_feather_is_refused(tmp_path):
     """The error says what to write instead."""
     with pytest.raises(CorpusError, match="Parquet or Arrow"):
@@ -146,3 +159,15 @@ def test_a_table_without_the_field_sets_its_rows_aside(tmp_path):
     found = read_back(tmp_path)
     assert found.texts == ["a"]
     assert found.places == [(1, "field missing"), (2, "field missing")]
+
+
+def test_a_row_group_is_not_held_whole(tmp_path):
+    """Files of a single row group are common: only its pages at hand are in memory."""
+    texts = [random.Random(n).randbytes(1500).hex() for n in range(10_000)]
+    pq.write_table(pa.table({"text": texts}), tmp_path / "a.parquet", use_dictionary=False)
+    [source] = find_sources([str(tmp_path / "a.parquet")])
+    fields = resolve_fields([source], ReadOptions())
+    before = pa.total_allocated_bytes()
+    held = [pa.total_allocated_bytes() - before for _ in read([source], ReadOptions(), fields)]
+    assert len(held) > 25
+    assert max(held) < 8_000_000
