@@ -23,12 +23,15 @@ _REMEMBERED = 100_000
 class Alterations:
     """Judges words by ``normalize``, each distinct word once (as long as memory is bounded)."""
 
-    def __init__(self, normalize: Callable[[str], str]) -> None:
+    def __init__(self, normalize: Callable[[str], str], *, alters_ascii: bool = True) -> None:
         self._normalize = normalize
+        self._alters_ascii = alters_ascii
         self._known: dict[str, Alteration] = {}
 
     def of(self, word: str) -> Alteration:
         """Return how the normaliser alters ``word`` when it stands alone."""
+        if not self._alters_ascii and word.isascii():
+            return UNALTERED
         known = self._known.get(word)
         if known is None:
             if len(self._known) >= _REMEMBERED:

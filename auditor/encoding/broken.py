@@ -4,12 +4,16 @@ from __future__ import annotations
 
 from collections.abc import Iterator
 from dataclasses import dataclass
+from typing import Any
 
 import numpy as np
 
 from auditor.encoding.measures import Reading
 from auditor.tallies.words import BrokenWord
 from auditor.vocabulary.engine import Ints, Inventory
+
+# A word and the ids of the tokens that touch it.
+Key = tuple[Any, ...]
 
 _DOT = "·"
 _REMEMBERED = 50_000
@@ -34,7 +38,12 @@ class BrokenWords:
 
     def __init__(self, inventory: Inventory) -> None:
         self._inventory = inventory
-        self._known: dict[tuple[str, bytes], BrokenWord] = {}
+        plain = ~inventory.stands_for_bytes
+        if inventory.unknown is not None:
+            plain[inventory.unknown] = False
+        # Whether the piece is shown by the characters it holds, by id.
+        self._plain: list[bool] = plain.tolist()
+        self._known: dict[Key, BrokenWord] = {}
 
     def find(self, reading: Reading) -> Broken:
         """Return the broken words of ``reading``, in order."""
@@ -48,34 +57,43 @@ class BrokenWords:
     def _rows(self, reading: Reading, hit: Ints) -> Iterator[BrokenWord]:
         spans, words = reading.spans, reading.stretch.words
         held = np.flatnonzero(spans.ends > spans.starts)
-        held = held[np.argsort(spans.starts[held], kind="stable")]
-        ids, starts, ends = spans.ids[held], spans.starts[held], spans.ends[held]
+        if (np.diff(spans.starts[held]) < 0).any():
+            held = held[np.argsort(spans.starts[held], kind="stable")]
+        starts, ends = spans.starts[held], spans.ends[held]
         firsts = np.searchsorted(np.maximum.accumulate(ends), words.starts[hit], side="right")
         stops = np.searchsorted(starts, words.ends[hit], side="left")
-        lost = (reading.unknown_touches[hit] > 0).tolist()
-        quads = zip(hit.tolist(), firsts.tolist(), stops.tolist(), lost, strict=True)
-        for place, first, stop, unknown in quads:
-            key = (reading.stretch.word_texts[place], ids[first:stop].tobytes())
+        tokens = (spans.ids[held].tolist(), starts.tolist(), ends.tolist())
+        quads = zip(
+            hit.tolist(),
+            words.starts[hit].tolist(),
+            firsts.tolist(),
+            stops.tolist(),
+            (reading.unknown_touches[hit] > 0).tolist(),
+            strict=True,
+        )
+        texts = reading.stretch.word_texts
+        for place, begin, first, stop, unknown in quads:
+            key = (texts[place], *tokens[0][first:stop])
             row = self._known.get(key)
-            if row is None:
-                shift = int(words.starts[place])
-                triples = zip(ids[first:stop], starts[first:stop], ends[first:stop], strict=True)
-                parts = [
-                    (int(i), int(start) - shift, int(end) - shift) for i, start, end in triples
-                ]
-                row = self._remember(key, parts, unknown=unknown)
-            yield row
+            yield row or self._remember(key, [part[first:stop] for part in tokens], begin, unknown)
 
     def _remember(
-        self, key: tuple[str, bytes], parts: list[tuple[int, int, int]], *, unknown: bool
+        self,
+        key: Key,
+        tokens: list[list[int]],
+        begin: int,
+        unknown: bool,  # noqa: FBT001 - internal
     ) -> BrokenWord:
         if len(self._known) >= _REMEMBERED:
             self._known.clear()
         word = key[0]
-        touching = [part for part in parts if part[1] < len(word) and part[2] > 0]
-        row = BrokenWord(
-            _shortened(word), _shortened(self._spelled(word, touching)), len(touching), int(unknown)
-        )
+        parts = [
+            (number, max(0, start - begin), min(len(word), end - begin))
+            for number, start, end in zip(*tokens, strict=True)
+            if start - begin < len(word) and end > begin
+        ]
+        broken = _shortened(self._spelled(word, parts))
+        row = BrokenWord(_shortened(word), broken, len(parts), int(unknown))
         self._known[key] = row
         return row
 
@@ -83,14 +101,13 @@ class BrokenWords:
         """Return the word with a dot between pieces; pieces that are bytes as ⟨hexadecimal⟩."""
         shown, reached = [], 0
         for number, start, end in parts:
-            piece = word[max(start, reached, 0) : min(end, len(word))]
-            reached = max(reached, min(end, len(word)))
-            if self._inventory.stands_for_bytes[number]:
+            if self._plain[number] and end > reached:
+                shown.append(word[max(start, reached) : end])
+            elif self._inventory.stands_for_bytes[number]:
                 shown.append(f"⟨{self._bytes(number)}⟩")
-            elif number == self._inventory.unknown:
-                shown.append(f"⟨{self._inventory.unknown_text}⟩")
             else:
-                shown.append(piece or f"⟨{self._inventory.entries[number]}⟩")
+                shown.append(f"⟨{self._inventory.entries[number]}⟩")
+            reached = max(reached, end)
         return _DOT.join(shown)
 
     def _bytes(self, number: int) -> str:

@@ -168,6 +168,7 @@ class Documents:
         for order, place in enumerate(self._cut):
             columns[place] = self._ledger.columns(order, by_piece, pieces.bounds)
             runs[place] = self._ledger.runs(order, by_piece, pieces.bounds)
+        self._ledger.release()
         self._add_uncut(stretch, source, lines, columns, runs)
         return Counted(text, columns, [table for table in runs if table is not None])
 

@@ -22,6 +22,10 @@ from auditor.vocabulary.engine import Ints
 MeasurePieces = Callable[[list[str], Ints], tuple[Columns, list[Measured]]]
 Sink = Callable[[int, Contents], None]
 
+# Pieces are remembered by hash in this many marks, a power of two.
+_MARKS = 1 << 23
+_FIRST_DIGIT = str(FIRST)
+
 
 @dataclass
 class _Block:
@@ -76,11 +80,14 @@ class Ledger:
         self._sink = sink
         self._most_rows = most_rows
         self._most_characters = most_characters
+        self._met = np.zeros(_MARKS, dtype=np.bool_)
         self._clear()
 
     def _clear(self) -> None:
         self._rows: dict[str, int] = {}
         self._characters = 0
+        self._kept = 0
+        self._passing: list[str] = []
         self._blocks: list[_Block] = []
         self._totals = np.zeros(1024, dtype=np.int64)
         self._text = _Table()
@@ -93,14 +100,50 @@ class Ledger:
         return [place for place, key in enumerate(cut.keys) if key not in rows]
 
     def take_in(self, cut: Cut, new: list[int], source: int, lines: Ints) -> None:
-        """Measure the ``new`` keys of ``cut``; ``lines`` (documents,) is where documents stand."""
-        if len(self._rows) + len(new) > self._most_rows or self._characters > self._most_characters:
+        """Measure the ``new`` keys of ``cut``; ``lines`` (documents,) is where documents stand.
+
+        Pieces met for the first time, and once, are let go again by ``release``: most of them never
+        come back.
+        """
+        lasting, passing = self._parted(cut, new)
+        full = len(self._rows) + len(lasting) > self._most_rows
+        if full or self._characters > self._most_characters:
             self.empty()
-            new = list(range(len(cut.keys)))
+            lasting, passing = self._parted(cut, list(range(len(cut.keys))))
+        self._measure_blocks(cut, lasting, source, lines)
+        self._kept = len(self._rows)
+        self._measure_blocks(cut, passing, source, lines)
+        self._passing = [cut.keys[place] for place in passing]
+
+    def _parted(self, cut: Cut, new: list[int]) -> tuple[list[int], list[int]]:
+        """Return those of ``new`` that are worth keeping, and those met once and never before.
+
+        Which is which is remembered by a hash, and may be wrong: it decides what is kept, never
+        what is counted.
+        """
+        places = np.array(new, dtype=np.int64)
+        marks = np.array([hash(cut.keys[place]) & _MARKS - 1 for place in new], dtype=np.int64)
+        known = self._met[marks] | (cut.counts[places] > 1)
+        self._met[marks] = True
+        return places[known].tolist(), places[~known].tolist()
+
+    def _measure_blocks(self, cut: Cut, places: list[int], source: int, lines: Ints) -> None:
         for begins in (False, True):
-            keys = [place for place in new if (int(cut.keys[place][0]) >= FIRST) is begins]
+            keys = [place for place in places if (cut.keys[place][0] >= _FIRST_DIGIT) is begins]
             if keys:
                 self._measure_block(cut, keys, source, lines)
+
+    def release(self) -> None:
+        """Hand over and forget the pieces that were not worth keeping."""
+        while self._blocks and self._blocks[-1].begin >= self._kept:
+            self._hand_over(self._blocks.pop())
+        for key in self._passing:
+            del self._rows[key]
+        self._characters -= sum(map(len, self._passing)) - len(self._passing)
+        self._totals[self._kept : self._kept + len(self._passing)] = 0
+        self._passing = []
+        for table in (self._text, *self._tables):
+            table.used = self._kept
 
     def _measure_block(self, cut: Cut, places: list[int], source: int, lines: Ints) -> None:
         keys = [cut.keys[place] for place in places]
@@ -110,8 +153,7 @@ class Ledger:
         self._rows.update({key: begin + place for place, key in enumerate(keys)})
         self._characters += sum(map(len, texts))
         self._text.extend(text, len(keys))
-        triples = zip(self._tables, self._profiles, measured, strict=True)
-        for table, profiles, found in triples:
+        for table, profiles, found in zip(self._tables, self._profiles, measured, strict=True):
             profile = profiles.of(found.runs, len(keys))
             table.extend({**found.columns, "profile": profile}, len(keys))
         held = [found.contents_only() for found in measured]
@@ -158,10 +200,13 @@ class Ledger:
     def empty(self) -> None:
         """Hand what pieces hold to the sink, with their counts, and forget all pieces."""
         for block in self._blocks:
-            weights = self._totals[block.begin : block.begin + len(block)]
-            for vocabulary, measured in enumerate(block.measured):
-                self._sink(vocabulary, Contents(measured, weights, block.sources, block.lines))
+            self._hand_over(block)
         self._clear()
+
+    def _hand_over(self, block: _Block) -> None:
+        weights = self._totals[block.begin : block.begin + len(block)]
+        for vocabulary, measured in enumerate(block.measured):
+            self._sink(vocabulary, Contents(measured, weights, block.sources, block.lines))
 
 
 def _sums(table: _Table, rows: Ints, bounds: Ints) -> Columns:

@@ -195,6 +195,8 @@ def lossless_column(reading: Reading, lost_space: str) -> Columns:
     engine, texts = reading.engine, reading.stretch.texts
     if not engine.has_decoder:
         return {"lossless_documents": np.zeros(len(texts), dtype=np.int64)}
+    if engine.spells_bytes and _spelled_alike(reading):
+        return {"lossless_documents": np.ones(len(texts), dtype=np.int64)}
     flat, bounds = reading.spans.ids.tolist(), reading.spans.bounds.tolist()
     decoded = engine.decode([flat[bounds[i] : bounds[i + 1]] for i in range(len(texts))])
     same = [
@@ -202,6 +204,21 @@ def lossless_column(reading: Reading, lost_space: str) -> Columns:
         for text, back in zip(texts, decoded, strict=True)
     ]
     return {"lossless_documents": np.array(same, dtype=np.int64)}
+
+
+def _spelled_alike(reading: Reading) -> bool:
+    """Return whether the bytes of the tokens are the bytes of the texts, text by text."""
+    spelled = reading.inventory.entry_bytes
+    if spelled is None:
+        return False
+    ids = reading.spans.ids.tolist()
+    lengths = np.array([len(spelled[number] or b"") for number in ids], dtype=np.int64)
+    stretch = reading.stretch
+    if not np.array_equal(
+        _sums(lengths, reading.spans.bounds), np.diff(stretch.bytes_before[stretch.bounds])
+    ):
+        return False
+    return b"".join([spelled[number] or b"" for number in ids]) == stretch.joined.encode()
 
 
 def _sums(values: Ints | Bools, bounds: Ints) -> Ints:

@@ -38,8 +38,8 @@ class RunProfiles:
     def expand(self, profile_of: Ints, document_of: Ints) -> RunTable:
         """Return the runs of pieces, given the profile and the document of each piece."""
         width = len(self._numbers)
-        codes, times = np.unique(document_of * width + profile_of, return_counts=True)
-        documents, profiles = np.divmod(codes, width)
+        codes, times = _counted(document_of * width + profile_of)
+        documents, profiles = np.divmod(codes, max(1, width))
         begins, table = self._flat()
         lengths = np.diff(begins)[profiles]
         places = np.repeat(begins[profiles] - np.cumsum(lengths) + lengths, lengths)
@@ -56,3 +56,13 @@ class RunProfiles:
         rows = [row for profile in self._numbers for row in profile]
         width = len(rows[0]) if rows else 9
         return begins, np.array(rows, dtype=np.int64).reshape(-1, width)
+
+
+def _counted(codes: Ints) -> tuple[Ints, Ints]:
+    """Return the distinct codes and how often each occurs; without sorting where they are dense."""
+    if not len(codes) or int(codes.max()) > 8 * len(codes) + 65_536:
+        distinct, times = np.unique(codes, return_counts=True)
+        return distinct, times.astype(np.int64)
+    counts = np.bincount(codes)
+    distinct = np.flatnonzero(counts)
+    return distinct, counts[distinct]

@@ -21,7 +21,8 @@ from auditor.encoding.touching import tokens_within
 from auditor.text.properties import CODE_POINTS
 from auditor.text.stretch import Stretch
 from auditor.text.whitespace import KINDS, Runs
-from auditor.vocabulary.engine import Bools, Ints
+from auditor.vocabulary.engine import Bools, Engine, Ints
+from auditor.vocabulary.joined import JoinedParts
 from auditor.vocabulary.opening import Vocabulary
 from auditor.vocabulary.separation import Separation
 from auditor.vocabulary.spans import correct
@@ -88,11 +89,12 @@ class WholeTexts:
     def __init__(
         self, vocabulary: Vocabulary, *, parse_control: bool, separation: Separation | None = None
     ) -> None:
-        self._engine = separation.later if separation else vocabulary.engine
+        self._engine: Engine = JoinedParts(separation) if separation else vocabulary.engine
         self._lost_space = separation.lost_space if separation else ""
         self._inventory = vocabulary.inventory
         self._parse_control = parse_control
-        self._alterations = Alterations(vocabulary.engine.normalize)
+        engine = vocabulary.engine
+        self._alterations = Alterations(engine.normalize, alters_ascii=engine.alters_ascii)
         self._fates = Fates(vocabulary)
         self._broken = BrokenWords(vocabulary.inventory)
 

@@ -3,6 +3,7 @@
 from __future__ import annotations
 
 from dataclasses import dataclass
+from itertools import chain
 
 import numpy as np
 import numpy.typing as npt
@@ -48,8 +49,8 @@ def find_words(texts: list[str], bounds: Ints, points: Points, *, rule: str) -> 
 
 
 def _segments(texts: list[str], bounds: Ints, points: Points) -> tuple[Ints, Ints]:
-    segments = list(WordBreaker(_SEPARATOR.join(texts), LOCALE).segments())
-    flat = np.array(segments, dtype=np.int64).reshape(-1, 2)
+    segments = WordBreaker(_SEPARATOR.join(texts), LOCALE).segments()
+    flat = np.fromiter(chain.from_iterable(segments), dtype=np.int64).reshape(-1, 2)
     separated = np.insert(points, bounds[1:-1], ord(_SEPARATOR))
     flat = utf16_to_points(flat, separated)
     places = bounds[1:-1] + np.arange(len(texts) - 1)

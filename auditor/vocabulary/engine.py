@@ -43,6 +43,14 @@ class Engine(Protocol):
     def alters(self) -> bool:
         """Whether there is a normaliser that may alter words."""
 
+    @property
+    def alters_ascii(self) -> bool:
+        """Whether a word of ASCII characters alone may be altered."""
+
+    @property
+    def spells_bytes(self) -> bool:
+        """Whether decoding is nothing but joining the bytes of the entries."""
+
     def encode(self, texts: list[str]) -> Encoding:
         """Return the tokens of ``texts``. May raise whatever the library raises."""
 

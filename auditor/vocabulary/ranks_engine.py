@@ -22,6 +22,8 @@ class RanksEngine:
 
     has_decoder = True
     alters = False
+    alters_ascii = False
+    spells_bytes = True
     overhead = (0, 0)
     family = "ranks"
 

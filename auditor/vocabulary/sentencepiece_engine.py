@@ -25,6 +25,7 @@ class SentencePieceEngine:
     """
 
     has_decoder = True
+    spells_bytes = False
     overhead = (0, 0)
 
     def __init__(self, model: bytes, *, where: str) -> None:
@@ -56,6 +57,11 @@ class SentencePieceEngine:
     def alters(self) -> bool:
         """Whether the model holds a character map."""
         return bool(self.proto.normalizer_spec.precompiled_charsmap)
+
+    @property
+    def alters_ascii(self) -> bool:
+        """Whether the character map may hold ASCII characters: it is not looked into."""
+        return self.alters
 
     def encode(self, texts: list[str]) -> Encoding:
         """Return the tokens of ``texts``."""

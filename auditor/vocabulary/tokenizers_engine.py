@@ -56,6 +56,17 @@ class TokenizersEngine:
         """Whether the file names a normaliser that is more than a spelling."""
         return self._normalizer is not None
 
+    @property
+    def alters_ascii(self) -> bool:
+        """Whether the normaliser is more than one of Unicode's forms, which leave ASCII alone."""
+        steps = {step["type"] for step in steps_of(self.description, "normalizer")}
+        return self.alters and not steps <= {"NFC", "NFD", "NFKC", "NFKD", "ByteLevel"}
+
+    @property
+    def spells_bytes(self) -> bool:
+        """Whether the decoder is the byte-level one alone."""
+        return [step["type"] for step in steps_of(self.description, "decoder")] == ["ByteLevel"]
+
     def encode(self, texts: list[str]) -> Encoding:
         """Return the tokens of ``texts``."""
         found = self._library.encode_batch(texts, add_special_tokens=False)
