@@ -98,7 +98,7 @@ Example:
 @click.option(
     "--batch-bytes",
     type=click.IntRange(min=1),
-    default=1 << 20,
+    default=1 << 19,
     show_default=True,
     metavar="N",
     help="Text measured at a time; never changes a figure.",

@@ -37,7 +37,7 @@ class ReadOptions:
     identifier: str | None = None
     unit: Unit = "record"
     encoding: str | None = None
-    batch_bytes: int = 1 << 20
+    batch_bytes: int = 1 << 19
     batch_documents: int = 4096
     strict: bool = False
     render: Render | None = None

@@ -17,7 +17,7 @@ _INSERTED = str.maketrans("", "", " \u2581")
 # `regex` also pairs i with İ and ı, as Turkish does; full case folding (CaseFolding.txt, C and F)
 # takes İ for i with a dot above, and ı for itself: so spelled, they match nothing else.
 _DOTS = str.maketrans({"\u0130": "i\u0307", "\u0131": "\uffff"})
-_REMEMBERED = 100_000
+_REMEMBERED = 50_000
 
 
 class Alterations:

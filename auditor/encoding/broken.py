@@ -16,7 +16,7 @@ from auditor.vocabulary.engine import Ints, Inventory
 Key = tuple[Any, ...]
 
 _DOT = "·"
-_REMEMBERED = 50_000
+_REMEMBERED = 30_000
 # A word as long as this is shown by its beginning; its count stays with the whole word's pieces.
 LONGEST_SHOWN = 120
 

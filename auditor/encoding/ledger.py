@@ -72,8 +72,8 @@ class Ledger:
         measure: MeasurePieces,
         sink: Sink,
         *,
-        most_rows: int = 150_000,
-        most_characters: int = 12 << 20,
+        most_rows: int = 100_000,
+        most_characters: int = 8 << 20,
     ) -> None:
         self._vocabularies = vocabularies
         self._measure = measure

@@ -190,7 +190,8 @@ def character_columns(reading: Reading) -> Columns:
 def lossless_column(reading: Reading, lost_space: str) -> Columns:
     """Return the column of texts that come back exactly; all 0 without a decoder.
 
-    ``lost_space`` is what decoding leaves out at the start of a text that begins with a space.
+    ``lost_space`` is what decoding leaves out at the start of a text that begins with a space and
+    has a token.
     """
     engine, texts = reading.engine, reading.stretch.texts
     if not engine.has_decoder:
@@ -198,10 +199,10 @@ def lossless_column(reading: Reading, lost_space: str) -> Columns:
     if engine.spells_bytes and _spelled_alike(reading):
         return {"lossless_documents": np.ones(len(texts), dtype=np.int64)}
     flat, bounds = reading.spans.ids.tolist(), reading.spans.bounds.tolist()
-    decoded = engine.decode([flat[bounds[i] : bounds[i + 1]] for i in range(len(texts))])
+    ids = [flat[bounds[i] : bounds[i + 1]] for i in range(len(texts))]
     same = [
-        text == (lost_space + back if text[:1] == " " else back)
-        for text, back in zip(texts, decoded, strict=True)
+        text == (lost_space + back if text[:1] == " " and own else back)
+        for text, own, back in zip(texts, ids, engine.decode(ids), strict=True)
     ]
     return {"lossless_documents": np.array(same, dtype=np.int64)}
 

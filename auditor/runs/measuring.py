@@ -10,6 +10,7 @@ from auditor.corpus import Batch, Flaw
 from auditor.encoding.documents import Documents, Tale
 from auditor.encoding.measures import Columns, derived_columns
 from auditor.errors import AuditError
+from auditor.runs import memory
 from auditor.runs.plan import Plan
 from auditor.runs.tallied import (
     AuditTallies,
@@ -54,6 +55,8 @@ class Measurer:
         self._plan = plan
         self._vocabularies = [open_vocabulary(spec) for spec in plan.vocabularies]
         self.facts = [facts_of(vocabulary) for vocabulary in self._vocabularies]
+        self._batches = 0
+        memory.give_back()
         self._contents = [ContentTallies(UsageTally(own.size)) for own in self.facts]
         self._documents = Documents(
             self._vocabularies,
@@ -101,6 +104,9 @@ class Measurer:
         return None
 
     def _measure(self, batch: Batch, source_number: int) -> Outcome:
+        self._batches += 1
+        if self._batches % memory.EVERY == 0:
+            memory.give_back()
         corpus = _corpus(self._plan, batch, source_number)
         if not batch.texts:
             return Outcome(batch, corpus, [], {}, [])

@@ -33,7 +33,7 @@ class BrokenWord(NamedTuple):
 class WordsTally(Tally):
     """Occurrences of each ``BrokenWord``; at most ``in_memory`` of them are held in memory."""
 
-    def __init__(self, in_memory: int = 100_000) -> None:
+    def __init__(self, in_memory: int = 50_000) -> None:
         self._bound = in_memory
         self._held: dict[BrokenWord, int] = {}
         self._spilled: list[IO[bytes]] = []

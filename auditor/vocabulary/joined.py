@@ -68,7 +68,7 @@ class JoinedParts:
             for place in (0, 1, -1)
         )
         before_letter = (firsts == ord(" ")) & letters[seconds] & self._before_letters
-        return self._ends[lasts] & (self._starts[firsts] | before_letter)
+        return np.asarray(self._ends[lasts] & (self._starts[firsts] | before_letter))
 
 
 def _taken_apart(encoded: Encoding, texts: list[str], groups: list[list[int]]) -> Encoding:

@@ -157,7 +157,8 @@ def _sample() -> tuple[str, ...]:
     """Return all of ASCII and the first and last character of each general category."""
     found = [chr(point) for point in range(128)]
     for category in _CATEGORIES:
-        held = properties.table(rf"\p{{{category}}}").nonzero()[0].tolist()
+        # Not kept: each of these tables is a megabyte, and each is looked at once.
+        held = properties.table.__wrapped__(rf"\p{{{category}}}").nonzero()[0].tolist()
         found += [chr(point) for point in (held[0], held[-1]) if not 0xD800 <= point < 0xE000]
     return tuple(dict.fromkeys(found))
 

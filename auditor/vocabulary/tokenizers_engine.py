@@ -26,7 +26,8 @@ class TokenizersEngine:
     """
 
     def __init__(self, description: dict[str, Any], *, control_strings: str, where: str) -> None:
-        self.description = description
+        # Entries and merges live in the library; a second copy of them would double the memory.
+        self.description = _without_entries(description)
         self._control_strings = control_strings
         self._where = where
         self._library = _load(_for_measuring(description), where)
@@ -39,9 +40,10 @@ class TokenizersEngine:
         self._normalizer = _word_normalizer(description, where)
 
     def with_normalizer(self, step: dict[str, Any]) -> TokenizersEngine:
-        """Return the same vocabulary with ``step`` for its normaliser."""
+        """Return the same vocabulary with ``step`` for its normaliser, and no template."""
+        description = orjson.loads(self._library.to_str())
         return TokenizersEngine(
-            {**self.description, "normalizer": step},
+            {**description, "normalizer": step},
             control_strings=self._control_strings,
             where=self._where,
         )
@@ -147,6 +149,11 @@ class TokenizersEngine:
 def steps_of(description: dict[str, Any], part: str) -> list[dict[str, Any]]:
     """Return the steps of a normaliser, pre-tokeniser or decoder, sequences laid flat."""
     return _flattened(description.get(part))
+
+
+def _without_entries(description: dict[str, Any]) -> dict[str, Any]:
+    left = {k: v for k, v in description["model"].items() if k not in {"vocab", "merges"}}
+    return {**description, "model": left}
 
 
 def _flattened(step: dict[str, Any] | None) -> list[dict[str, Any]]:

@@ -28,6 +28,7 @@ from auditor.runs.auditing import assess
 from auditor.runs.plan import Plan
 from auditor.vocabulary import VocabularySpec
 from tests import oracle
+from tests.differences import differences
 from tests.outside import material
 
 pytestmark = pytest.mark.outside
@@ -145,19 +146,3 @@ def test_all_translations_are_there(audits):
     slices = audits[False]["vocabularies"][0]["slices"]
     assert len(slices) - 1 == 530
     assert slices["all"]["counts"]["documents"] == 15_803
-
-
-def differences(ours, theirs, where=""):
-    """Yield what differs; floats may differ in the last bits, integers and nulls may not."""
-    if isinstance(ours, dict) and isinstance(theirs, dict):
-        for key in sorted(ours.keys() | theirs.keys()):
-            if key != "note":  # the reasons are worded apart
-                yield from differences(ours.get(key), theirs.get(key), f"{where}/{key}")
-    elif isinstance(ours, list) and isinstance(theirs, list) and len(ours) == len(theirs):
-        for place, (one, other) in enumerate(zip(ours, theirs, strict=True)):
-            yield from differences(one, other, f"{where}/{place}")
-    elif isinstance(ours, float) and isinstance(theirs, float):
-        if ours != pytest.approx(theirs, rel=1e-9, abs=1e-12):
-            yield where, ours, theirs
-    elif ours != theirs:
-        yield where, ours, theirs
