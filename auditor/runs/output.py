@@ -5,6 +5,7 @@ from __future__ import annotations
 import shutil
 import tempfile
 from collections.abc import Iterable
+from contextlib import suppress
 from pathlib import Path
 from types import TracebackType
 
@@ -52,6 +53,7 @@ class OutputFolder:
             )
 
     def __enter__(self) -> OutputFolder:
+        self._made = [p for p in self.path.parents if not p.exists()]
         try:
             self.path.parent.mkdir(parents=True, exist_ok=True)
             made = tempfile.mkdtemp(prefix=f".{self.path.name}.", dir=self.path.parent)
@@ -73,6 +75,9 @@ class OutputFolder:
     ) -> None:
         if kind is not None:
             shutil.rmtree(self.begun, ignore_errors=True)
+            with suppress(OSError):  # somebody else may have begun to use them
+                for folder in self._made:
+                    folder.rmdir()
 
     def write(self, name: str, content: bytes | str) -> None:
         """Write one file."""

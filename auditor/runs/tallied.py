@@ -123,8 +123,10 @@ class AuditTallies:
             ours.merge(theirs)
 
     def merge_documents(self, corpus: CorpusTallies, documents: list[DocumentTallies]) -> None:
-        """Add the documents of a batch."""
+        """Add the documents of a batch; none when all its records were set aside."""
         self.corpus.merge(corpus)
+        if not documents:
+            return
         for ours, theirs in zip(self.documents, documents, strict=True):
             ours.merge(theirs)
 
