@@ -2,7 +2,6 @@
 
 from __future__ import annotations
 
-
 import pytest
 
 from tests.outside.material import fetch_udhr, udhr_articles

@@ -111,5 +111,5 @@ def test_versions_are_named(run):
     """`--version` names what a figure depends on."""
     said = run("--version")
     assert {"auditor", "tokenizers", "icu", "unicode"} <= {
-        l.split()[0] for l in said.out.splitlines()
+        line.split()[0] for line in said.out.splitlines()
     }
