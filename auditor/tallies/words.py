@@ -11,6 +11,7 @@ import tempfile
 import weakref
 from collections.abc import Iterable, Iterator
 from itertools import groupby
+from pathlib import Path
 from typing import IO, NamedTuple
 
 import orjson
@@ -19,6 +20,7 @@ from auditor.tallies.base import State, Tally
 
 # Files of one tally: past this number they are merged into one.
 _MOST_FILES = 32
+_PREFIX = "auditor-words-"
 
 
 class BrokenWord(NamedTuple):
@@ -77,20 +79,31 @@ class WordsTally(Tally):
             self.add(BrokenWord(*row), count)
 
     def __reduce__(self) -> tuple[object, ...]:
-        return _rebuilt, (self._bound, self.counts())
+        """Travel between processes by way of a file: all rows may be more than memory holds."""
+        with tempfile.NamedTemporaryFile(prefix=_PREFIX, delete=False) as file:
+            _write(file, self.rows())
+        return _received, (self._bound, file.name)
 
 
-def _rebuilt(bound: int, counts: State) -> WordsTally:
+def _received(bound: int, name: str) -> WordsTally:
     tally = WordsTally(bound)
-    tally.fill(counts)
+    path = Path(name)
+    with path.open("rb") as file:
+        for row, count in _read(file):
+            tally.add(row, count)
+    path.unlink()
     return tally
 
 
 def _written(rows: Iterable[tuple[BrokenWord, int]]) -> IO[bytes]:
-    file = tempfile.TemporaryFile(prefix="auditor-words-")  # noqa: SIM115 - closed with its tally
+    file = tempfile.TemporaryFile(prefix=_PREFIX)  # noqa: SIM115 - closed with its tally
+    _write(file, rows)
+    return file
+
+
+def _write(file: IO[bytes], rows: Iterable[tuple[BrokenWord, int]]) -> None:
     for row, count in rows:
         file.write(orjson.dumps([*row, count]) + b"\n")
-    return file
 
 
 def _close(files: list[IO[bytes]]) -> None:

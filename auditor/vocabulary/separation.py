@@ -27,7 +27,12 @@ from auditor.vocabulary.opening import Vocabulary
 from auditor.vocabulary.patterns import splits_after_word, splits_before_single_space
 from auditor.vocabulary.ranks_engine import RanksEngine
 from auditor.vocabulary.sentencepiece_engine import SentencePieceEngine
-from auditor.vocabulary.tokenizers_engine import METASPACE, TokenizersEngine, steps_of
+from auditor.vocabulary.tokenizers_engine import (
+    METASPACE,
+    TokenizersEngine,
+    rejoined,
+    steps_of,
+)
 
 # Normalisers that act on each character, or on a character and the marks after it: a space is
 # neither joined to what stands before it nor moved.
@@ -142,7 +147,8 @@ def _tokenizers(engine: TokenizersEngine, entries: list[str | None]) -> Separati
             return "its normaliser is not proved to act part by part"
         after = _splits(splitters, splits_after_word)
         words = _words_open_to_all() if after else _no_words_open()
-        return Separation(engine, _lost_space(engine), closed_to_all(), words, contents)
+        later = _without_prefix(engine, splitters)
+        return Separation(later, _lost_space(later), closed_to_all(), words, contents)
     return _without_splitter(engine, steps, entries, contents)
 
 
@@ -172,6 +178,19 @@ def _step_splits(step: dict[str, Any], proves: Callable[[str], bool]) -> bool | 
     return False if kind in _LOCAL_SPLITTERS else None
 
 
+def _without_prefix(engine: TokenizersEngine, splitters: list[dict[str, Any]]) -> TokenizersEngine:
+    """Return the engine without the space that a byte-level first step sets before the text.
+
+    As a later step it sets one before every part, wherever the part stands: that is left alone. A
+    part that begins with a space never gets one.
+    """
+    first = splitters[0]
+    if first["type"] != "ByteLevel" or not first.get("add_prefix_space", True):
+        return engine
+    changed = [{**first, "add_prefix_space": False}, *splitters[1:]]
+    return engine.changed("pre_tokenizer", rejoined(changed, "pretokenizers"))
+
+
 def _without_splitter(
     engine: TokenizersEngine,
     steps: list[dict[str, Any]],
@@ -188,7 +207,7 @@ def _without_splitter(
     prepends = {"type": "Prepend", "prepend": METASPACE}
     if steps not in ([prepends, marks], [marks]):
         return "its normaliser is not proved to act part by part"
-    later = engine.with_normalizer(marks)
+    later = engine.changed("normalizer", marks)
     closed, words = _by_entries(entries)
     return Separation(later, _lost_space(later), closed, words, contents)
 

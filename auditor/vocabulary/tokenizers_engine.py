@@ -39,11 +39,11 @@ class TokenizersEngine:
         self._library.encode_special_tokens = control_strings == "text"
         self._normalizer = _word_normalizer(description, where)
 
-    def with_normalizer(self, step: dict[str, Any]) -> TokenizersEngine:
-        """Return the same vocabulary with ``step`` for its normaliser, and no template."""
+    def changed(self, part: str, step: dict[str, Any] | None) -> TokenizersEngine:
+        """Return the same vocabulary with ``step`` for ``part``, and without its template."""
         description = orjson.loads(self._library.to_str())
         return TokenizersEngine(
-            {**description, "normalizer": step},
+            {**description, part: step},
             control_strings=self._control_strings,
             where=self._where,
         )
@@ -174,11 +174,12 @@ def _for_measuring(description: dict[str, Any]) -> dict[str, Any]:
         {**s, **({"cleanup": False} if "cleanup" in s else {})}
         for s in steps_of(description, "decoder")
     ]
-    changed["decoder"] = _rejoined(steps, "decoders")
+    changed["decoder"] = rejoined(steps, "decoders")
     return changed
 
 
-def _rejoined(steps: list[dict[str, Any]], inner: str) -> dict[str, Any] | None:
+def rejoined(steps: list[dict[str, Any]], inner: str) -> dict[str, Any] | None:
+    """Return one step, or a sequence of them under the name ``inner``; ``None`` for none."""
     if len(steps) <= 1:
         return steps[0] if steps else None
     return {"type": "Sequence", inner: steps}
@@ -202,7 +203,7 @@ def _word_normalizer(description: dict[str, Any], where: str) -> Any:  # noqa: A
     if not steps:
         return None
     model = {"type": "WordLevel", "vocab": {"?": 0}, "unk_token": "?"}
-    return _load({"model": model, "normalizer": _rejoined(steps, "normalizers")}, where).normalizer
+    return _load({"model": model, "normalizer": rejoined(steps, "normalizers")}, where).normalizer
 
 
 def _spelled_bytes(entries: list[str | None], literal: set[int]) -> list[bytes | None]:

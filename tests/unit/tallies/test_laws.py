@@ -4,6 +4,7 @@ from __future__ import annotations
 
 import inspect
 import json
+import pickle
 import pkgutil
 import random
 from importlib import import_module
@@ -201,3 +202,11 @@ def test_sums_past_64_bits_stay_exact():
     rows = [(2**40, 1, "pt", "a", ""), (2**40, 1, "pt", "a", "")]
     tally = filled(MomentsTally, rows)
     assert tally.moments("all", "tokens", "words").yy == 2**81
+
+
+def test_words_travel_between_processes_by_file():
+    """A pickled tally of words is small whatever it holds, and arrives whole."""
+    tally = filled(WordsTally, [(n, n % 9, "pt", "a", f"w{n}") for n in range(500)])
+    sent = pickle.dumps(tally)
+    assert len(sent) < 500
+    assert pickle.loads(sent) == tally

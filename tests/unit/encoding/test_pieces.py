@@ -1,0 +1,106 @@
+"""Documents measured piece by piece are what they are when encoded whole: over random vocabularies.
+
+The oracle is whole-document encoding. What must be equal: every column, the runs of whitespace by
+kind, the entries used, the broken words and the lost characters.
+"""
+
+from __future__ import annotations
+
+import json
+
+import numpy as np
+import pytest
+from hypothesis import find, given, settings
+from hypothesis import strategies as st
+
+import auditor.encoding.documents as encoding
+from auditor.encoding.documents import Documents, SeparationError
+from auditor.runs.tallied import ContentTallies
+from auditor.tallies.groups import groupings
+from auditor.tallies.usage import UsageTally
+from auditor.tallies.whitespace import WhitespaceTally
+from auditor.text.stretch import Stretch
+from auditor.text.whitespace import KINDS as WHITESPACE_KINDS
+from auditor.vocabulary import VocabularySpec, open_vocabulary, separation
+from auditor.vocabulary.separation import separate
+from tests.unit.encoding.random_vocabularies import KINDS, descriptions
+
+ALPHABET = [*"abAé.,1 \n\t", "中", "\u0301", "▁", "<s>", "\u200b", "ß", "\u00a0", "  "]
+document = st.lists(st.sampled_from(ALPHABET), max_size=16).map("".join)
+texts = st.lists(document, min_size=1, max_size=8)
+
+
+def measured(vocabulary, documents, *, whole):
+    """Return all that is measured of ``documents``, as plain values."""
+    contents = ContentTallies(UsageTally(len(vocabulary.inventory.entries)))
+    measuring = Documents(
+        [vocabulary], lambda _, found: contents.add(found), words="icu", graphemes=True,
+        parse_control=True, whole=whole,
+    )  # fmt: skip
+    columns, runs = [], WhitespaceTally(WHITESPACE_KINDS)
+    for begin in range(0, len(documents), 3):
+        batch = documents[begin : begin + 3]
+        lines = np.arange(begin + 1, begin + 1 + len(batch))
+        found = measuring.measure(Stretch(batch), 0, lines)
+        rows = {**found.text, **found.columns[0]}
+        columns.append({name: values.tolist() for name, values in sorted(rows.items())})
+        table = found.runs[0]
+        runs.add(table.kind_of, table.table, table.document_of, groupings(len(batch), {}))
+    measuring.finish()
+    tallies = (contents.usage, contents.words, contents.characters, runs)
+    return columns, [tally.counts() for tally in tallies], measuring.tale
+
+
+def opened(description, folder):
+    path = folder / "tokenizer.json"
+    path.write_text(json.dumps(description))
+    return open_vocabulary(VocabularySpec(str(path)))
+
+
+@pytest.fixture(scope="module")
+def folder(tmp_path_factory):
+    return tmp_path_factory.mktemp("random")
+
+
+@pytest.fixture(autouse=True)
+def always_by_pieces(monkeypatch):
+    """Never turn to whole encoding for speed, so that pieces are what is tested."""
+    monkeypatch.setattr(encoding, "_TOO_DIVERSE", 99.0)
+
+
+@pytest.mark.parametrize("kind", list(KINDS))
+@settings(max_examples=40)
+@given(data=st.data())
+def test_pieces_add_up_to_the_whole(kind, folder, data):
+    """Random entries, random merges, random text of hard characters; the run's own check is on."""
+    description, documents = data.draw(descriptions(kind)), data.draw(texts)
+    vocabulary = opened(description, folder)
+    columns, tallies, tale = measured(vocabulary, documents, whole=False)
+    assert (columns, tallies) == measured(vocabulary, documents, whole=True)[:2]
+    assert tale.whole + tale.by_pieces == len(documents)
+
+
+@pytest.mark.parametrize("kind", list(KINDS))
+def test_these_kinds_are_cut(kind, folder):
+    """The test above is not empty: each of these kinds is measured by pieces."""
+    found = separate(opened(data_for(kind), folder))
+    assert not isinstance(found, str), found
+
+
+def data_for(kind):
+    return find(descriptions(kind), lambda _: True)
+
+
+def test_a_wrong_cut_is_noticed_by_the_run(folder, monkeypatch):
+    """When a cut is made that is not proved, the check against whole encoding stops the run."""
+    description = data_for("no splitter")
+    model = description["model"]
+    model["vocab"].update({"a▁": 800, "a▁b": 801})
+    model["merges"] = [["a", "▁"], ["a▁", "b"]]
+    vocabulary = opened(description, folder)
+    right = measured(vocabulary, ["1a b1 a b"], whole=False)
+    assert right[:2] == measured(vocabulary, ["1a b1 a b"], whole=True)[:2]
+    everywhere = (separation.closed_to_all(), dict.fromkeys(" \t\r\n", separation.settled_words()))
+    monkeypatch.setattr(separation, "_by_entries", lambda _: everywhere)
+    with pytest.raises(SeparationError):
+        measured(vocabulary, ["1a b1 a b"], whole=False)
