@@ -76,9 +76,9 @@ def main(corpus: str, vocabularies: list[str]) -> None:
                 told = json.loads(Path(folder, "audit", "run.json").read_bytes())
             pieces = told["pieces"]
             print(
-                f"  {'whole' if way else 'by pieces':9} {seconds:6.1f} s, {size / seconds:5.1f} MB/s, "
-                f"{peer / seconds:4.2f} × the library's speed, peak {peak:.0f} MB, "
-                f"{pieces['measured']:,} of {pieces['occurrences']:,} pieces measured"
+                f"  {'whole' if way else 'by pieces'}: {seconds:.1f} s, {size / seconds:.1f} MB/s,",
+                f"{peer / seconds:.2f} × the library's speed, peak {peak:.0f} MB,",
+                f"{pieces['measured']:,} of {pieces['occurrences']:,} pieces measured",
             )
 
 

@@ -33,7 +33,6 @@ from tests.outside import material
 
 pytestmark = pytest.mark.outside
 LIMIT = 256
-# Each vocabulary: how the package is told of it, and how the oracle opens it.
 NAMES = ["sentencepiece", "json ranks", "ranks", "wordpiece", "unigram"]
 
 
@@ -67,24 +66,22 @@ def train(kind: str, texts: list[str], folder: Path) -> Path:
     return folder
 
 
-def by_oracle(
-    name: str, path: str, records: list[dict[str, str]], first: list[int] | None
-) -> tuple[dict, list[int]]:
-    """Return the oracle's slices of one vocabulary, and its tokens by document."""
-    openers = {
-        "sentencepiece": oracle.open_sentencepiece,
-        "json ranks": oracle.open_tekken_json,
-        "ranks": lambda p: oracle.open_ranks(p, material.RANK_FILE_PATTERN, {}),
-    }
-    vocabulary = openers.get(name, lambda p: oracle.open_tokenizers(Path(p) / "tokenizer.json"))(
-        path
-    )
+def opened(name: str, path: str) -> oracle.OracleVocabulary:
+    """Return the vocabulary as the oracle opens it."""
+    if name == "sentencepiece":
+        return oracle.open_sentencepiece(path)
+    if name == "json ranks":
+        return oracle.open_tekken_json(path)
+    if name == "ranks":
+        return oracle.open_ranks(path, material.RANK_FILE_PATTERN, {})
+    return oracle.open_tokenizers(Path(path) / "tokenizer.json")
+
+
+def by_oracle(name: str, path: str, records: list[dict[str, str]], first: list[int]) -> dict:
+    """Return the oracle's slices of one vocabulary; ``first`` is the first one's tokens."""
     documents = [oracle.Document(r["text"], {"code": r["code"]}) for r in records]
-    tokens = oracle.tokens_per_document(documents, vocabulary)
-    slices = oracle.measure(
-        documents, vocabulary, by=["code"], limit=LIMIT, reference_tokens=first or tokens
-    )
-    return slices, tokens
+    vocabulary = opened(name, path)
+    return oracle.measure(documents, vocabulary, by=["code"], limit=LIMIT, reference_tokens=first)
 
 
 @pytest.fixture(scope="module")
@@ -110,10 +107,11 @@ def paths(udhr, tmp_path_factory) -> dict[str, Path]:
 @pytest.fixture(scope="module")
 def expected(udhr, paths) -> dict[str, dict]:
     """Return what the oracle says of each vocabulary, two at a time."""
-    first, tokens = by_oracle(NAMES[0], str(paths[NAMES[0]]), udhr, None)
+    documents = [oracle.Document(record["text"], {}) for record in udhr]
+    first = oracle.tokens_per_document(documents, opened(NAMES[0], str(paths[NAMES[0]])))
     with ProcessPoolExecutor(2, mp_context=get_context("spawn")) as pool:
-        waiting = {n: pool.submit(by_oracle, n, str(paths[n]), udhr, tokens) for n in NAMES[1:]}
-        return {NAMES[0]: first, **{n: future.result()[0] for n, future in waiting.items()}}
+        waiting = {n: pool.submit(by_oracle, n, str(paths[n]), udhr, first) for n in NAMES}
+        return {name: future.result() for name, future in waiting.items()}
 
 
 @pytest.fixture(scope="module")

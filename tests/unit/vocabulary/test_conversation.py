@@ -184,10 +184,10 @@ def test_template_syntax_in_a_message_stays_text():
 def test_the_way_to_render_can_be_sent_to_another_process():
     """The bound method survives pickling, before and after its first use."""
     renderer = Renderer(TEMPLATE, {"bos_token": "<s>", "eos_token": "</s>"})
-    fresh = pickle.loads(pickle.dumps(renderer.render))  # noqa: S301 - our own bytes
+    fresh = pickle.loads(pickle.dumps(renderer.render))
     text = fresh(TALK)
     assert text == renderer.render(TALK)
-    used = pickle.loads(pickle.dumps(renderer.render))  # noqa: S301 - our own bytes
+    used = pickle.loads(pickle.dumps(renderer.render))
     assert used(TALK) == text
 
 
