@@ -104,3 +104,12 @@ def test_a_wrong_cut_is_noticed_by_the_run(folder, monkeypatch):
     monkeypatch.setattr(separation, "_by_entries", lambda _: everywhere)
     with pytest.raises(SeparationError):
         measured(vocabulary, ["1a b1 a b"], whole=False)
+
+
+@pytest.mark.parametrize("kind", list(KINDS))
+@pytest.mark.parametrize("text", ["a b ", " a b", "a\nb", "a\tb ", "ab  ", "a <s> b", "1a b1\n\n"])
+def test_edges_and_line_ends_come_back_as_in_the_whole(kind, text, folder):
+    """A last piece of one space, line ends and control strings: each once decided wrongly."""
+    vocabulary = opened(data_for(kind), folder)
+    by_pieces = measured(vocabulary, ["a", text], whole=False)
+    assert by_pieces[:2] == measured(vocabulary, ["a", text], whole=True)[:2]
