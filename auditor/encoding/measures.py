@@ -41,14 +41,20 @@ class Reading:
 
     @cached_property
     def control(self) -> Bools:
-        """Tokens that a control string of the text produced, shape (tokens,)."""
+        """Tokens that a control string of the text produced, shape (tokens,).
+
+        The model itself emits the unknown entry and byte pieces, which a file may mark special too:
+        they count only where the text spells them.
+        """
         inventory, ids = self.inventory, self.spans.ids
         if not self.parse_control:
             return np.zeros(len(ids), dtype=np.bool_)
         found = inventory.control[ids].copy()
-        if inventory.unknown is not None and inventory.control[inventory.unknown]:
-            for token in np.flatnonzero(ids == inventory.unknown).tolist():
-                found[token] = self._text_of(token).strip() == inventory.unknown_text
+        emitted = inventory.stands_for_bytes[ids]
+        if inventory.unknown is not None:
+            emitted = emitted | (ids == inventory.unknown)
+        for token in np.flatnonzero(found & emitted).tolist():
+            found[token] = self._text_of(token).strip() == inventory.entries[ids[token]]
         return found
 
     def _text_of(self, token: int) -> str:

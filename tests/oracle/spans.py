@@ -28,11 +28,11 @@ def spans(text: str, vocabulary: OracleVocabulary, control_strings: str = "parse
     _give_marks_to_the_character_before(text, tokens)
     parsed = vocabulary.parses_control_strings and control_strings == "parse"
     for token in tokens:
-        if token.id == vocabulary.unknown_id:
+        token.is_control = parsed and token.id in vocabulary.control_ids
+        # The model itself emits these too: only the spelling tells.
+        if token.id == vocabulary.unknown_id or token.id in vocabulary.byte_ids:
             token.is_control = parsed and _spells_its_own_entry(text, token, vocabulary)
-            token.is_unknown = not token.is_control
-        else:
-            token.is_control = parsed and token.id in vocabulary.control_ids
+        token.is_unknown = token.id == vocabulary.unknown_id and not token.is_control
     return tokens
 
 
