@@ -8,7 +8,7 @@ BYTES = [f"<0x{byte:02X}>" for byte in range(256)]
 
 
 def fallback(folder):
-    """Return a byte-fallback vocabulary whose byte pieces are marked special, as some trainers do."""
+    """Return a byte-fallback vocabulary that marks its byte pieces special, as trainers may."""
     entries = ["<unk>", "<s>", "a", "b", *BYTES]
     added = [
         {"id": number, "content": entry, "special": True, "single_word": False, "lstrip": False,
