@@ -13,6 +13,7 @@ import numpy as np
 from auditor.encoding.cutting import FIRST, LAST, Cut, Places, cut
 from auditor.encoding.ledger import Ledger
 from auditor.encoding.measures import Columns, text_columns
+from auditor.encoding.weaving import Counted, woven
 from auditor.encoding.whole import Contents, Measured, RunTable, WholeTexts
 from auditor.errors import AuditError
 from auditor.text.stretch import Edges, Stretch
@@ -33,15 +34,6 @@ _CHECKED_AFTER = 401
 
 class SeparationError(AuditError):
     """A document whose pieces did not add up to the whole: the run must be measured whole."""
-
-
-@dataclass(frozen=True, slots=True)
-class Counted:
-    """Documents measured: columns of text, and columns and runs under each vocabulary."""
-
-    text: Columns
-    columns: list[Columns]
-    runs: list[RunTable]
 
 
 @dataclass
@@ -125,7 +117,7 @@ class Documents:
             texts = [stretch.texts[place] for place in places.tolist()]
             part = Stretch(texts, words=self._words)
             parts.append((places, measure(part, source, lines[places])))
-        return _woven(parts, len(stretch))
+        return woven(parts, len(stretch))
 
     def finish(self) -> None:
         """Hand over what the ledger still holds."""
@@ -273,32 +265,3 @@ class _AddedContents:
             return np.zeros(len(texts), dtype=np.bool_)
         search = self._pattern.search
         return np.array([search(text) is not None for text in texts], dtype=np.bool_)
-
-
-def _woven(parts: list[tuple[Ints, Counted]], count: int) -> Counted:
-    """Return the measures of all documents from those of two parts, each with its places."""
-    vocabularies = range(len(parts[0][1].columns))
-    return Counted(
-        _woven_columns([(places, part.text) for places, part in parts], count),
-        [
-            _woven_columns([(places, part.columns[v]) for places, part in parts], count)
-            for v in vocabularies
-        ],
-        [_woven_runs([(places, part.runs[v]) for places, part in parts]) for v in vocabularies],
-    )
-
-
-def _woven_columns(parts: list[tuple[Ints, Columns]], count: int) -> Columns:
-    found = {name: np.zeros(count, dtype=np.int64) for name in parts[0][1]}
-    for places, columns in parts:
-        for name, values in columns.items():
-            found[name][places] = values
-    return found
-
-
-def _woven_runs(parts: list[tuple[Ints, RunTable]]) -> RunTable:
-    return RunTable(
-        np.concatenate([runs.kind_of for _, runs in parts]),
-        np.concatenate([runs.table for _, runs in parts]),
-        np.concatenate([places[runs.document_of] for places, runs in parts]),
-    )
