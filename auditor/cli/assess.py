@@ -15,7 +15,7 @@ Example:
 """
 
 
-@click.command("assess", epilog=EXAMPLE)
+@click.command("assess", epilog=EXAMPLE, short_help="Measure a corpus; write the whole audit.")
 @click.argument("corpus", nargs=-1, required=True)
 @click.option(
     "--vocab",

@@ -220,7 +220,9 @@ class Documents:
                 if not self._agrees(order, rows, found, text, place):
                     name = self._vocabularies[self._cut[order]].name
                     raise SeparationError(
-                        f"pieces and whole differ under {name}.", where=f"line {lines[document]}"
+                        f"pieces and whole differ under {name}.",
+                        hint="Measure again with --whole.",
+                        where=f"line {lines[document]}",
                     )
 
     def _is_checked(self, text: str, place: int) -> bool:

@@ -67,7 +67,7 @@ def assess(
     try:
         return _audited(plan, reading, out, overwrite=overwrite, began=began)
     except SeparationError as fault:
-        if any(source.name == "-" for source in sources):
+        if "-" in plan.corpus:  # it cannot be read again
             raise
         again = replace(plan, whole=True)
         return _audited(again, reading, out, overwrite=overwrite, began=began, fault=str(fault))
