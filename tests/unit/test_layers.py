@@ -15,6 +15,7 @@ LAYERS = [
     {"corpus", "vocabulary", "tallies"},
     {"encoding"},
     {"figures"},
+    {"planning"},
     {"report"},
     {"runs"},
     {"api"},
