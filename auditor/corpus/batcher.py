@@ -27,6 +27,7 @@ class Batcher:
         self._by = [(name, self._reaching(name)) for name in options.by]
         self._origin = self._reaching(options.origin) if options.origin else None
         self._identifier = reaching(fields.identifier) if fields.identifier else None
+        self._pair = _single(options.pair) if options.pair else None
         self._labelled = bool(self._by or self._origin or self._identifier)
         self._number = 0
         self._batch = Batch(0, "")
@@ -41,10 +42,16 @@ class Batcher:
         text_of = _itself if plain else self._text
         for line, record, mends in rows:
             text = text_of(record)
+            pair = self._pair(record) if self._pair else ""
+            if isinstance(pair, Damage) and not isinstance(text, Damage):
+                text = pair
             if isinstance(text, Damage):
                 batch.set_aside.append(self._flaw(line, text))
             else:
-                size += len(text) if text.isascii() else len(text.encode())
+                size += _utf8_length(text)
+                if batch.pairs is not None and isinstance(pair, str):
+                    size += _utf8_length(pair)
+                    batch.pairs.append(pair)
                 batch.texts.append(text)
                 batch.lines.append(line)
                 if self._labelled:
@@ -68,6 +75,7 @@ class Batcher:
             slices={name: [] for name in self._options.by},
             origins=None if self._origin is None else [],
             identifiers=None if self._identifier is None else [],
+            pairs=None if self._pair is None else [],
         )
         return self._batch
 
@@ -100,6 +108,10 @@ class Batcher:
                 where=f"{self._batch.source}:{line}",
             )
         return Flaw(self._batch.source, line, fault.reason, fault.detail)
+
+
+def _utf8_length(text: str) -> int:
+    return len(text) if text.isascii() else len(text.encode())
 
 
 def _itself(record: Any) -> str | Damage:  # noqa: ANN401 - a row of plain text holds a text
