@@ -20,8 +20,8 @@ def pair_columns(candidates: Sequence[Candidate], first: Ints, second: Ints) -> 
     """Return what each candidate and each way of cutting takes from pairs.
 
     ``first`` and ``second`` are tokens of the two texts, shape (pairs,), as is every column. A pair
-    cannot fit when the one text that may be cut is too short to give what is too much; nothing is
-    taken from it.
+    cannot fit when the one text that may be cut would have no token left; nothing is taken from it
+    (as `tokenizers` refuses to cut it).
     """
     found: Columns = {}
     for candidate in candidates:
@@ -38,9 +38,9 @@ def pair_columns(candidates: Sequence[Candidate], first: Ints, second: Ints) -> 
 def _lost(way: str, first: Ints, second: Ints, excess: Ints, room: int) -> tuple[Ints, Ints]:
     nothing = np.zeros_like(excess)
     if way == "first_only":
-        return np.where(excess <= first, excess, 0), nothing
+        return np.where(excess < first, excess, 0), nothing
     if way == "second_only":
-        return nothing, np.where(excess <= second, excess, 0)
+        return nothing, np.where(excess < second, excess, 0)
     kept = _longest_first(first, second, room)
     cut = excess > 0
     return np.where(cut, first - kept[0], 0), np.where(cut, second - kept[1], 0)

@@ -15,7 +15,7 @@ from auditor.runs.measuring import corpus_tallies, without_failing
 from auditor.runs.plan import Plan
 from auditor.runs.tallied import CorpusTallies
 from auditor.tallies.corpus import DigestTally
-from auditor.tallies.groups import groupings
+from auditor.tallies.groups import ALL, groupings
 from auditor.tallies.lengths import LengthsTally
 from auditor.tallies.moments import MomentsTally
 from auditor.text.stretch import Stretch
@@ -48,6 +48,16 @@ class LengthTallies:
             LengthsTally(facts.overhead[1 if paired else 0]),
             MomentsTally(*columns),
         )
+
+    @property
+    def slices(self) -> list[str]:
+        """The slice keys, that of all documents among them."""
+        return self.cuts.slices()
+
+    @property
+    def documents(self) -> int:
+        """The number of documents measured."""
+        return self.cuts.total(ALL, "documents")
 
     def merge(self, other: LengthTallies) -> None:
         """Add the counts of ``other``."""
