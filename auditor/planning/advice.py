@@ -22,12 +22,13 @@ def advise(known: Known, wishes: Wishes, weighed: list[Json]) -> Json:
     """
     place = _choice(weighed, wishes.accepted)
     chosen = weighed[place]
-    length = chosen["length"]
+    length, meets = chosen["length"], _share(chosen) <= wishes.accepted
+    below = _share_below(known, weighed, place, asked=bool(wishes.lengths))
     return {
         "length": length,
-        "meets_accepted_share": _share(chosen) <= wishes.accepted,
+        "meets_accepted_share": meets,
         "is_the_limit": length == known.limit,
-        "holds_for_accepted": _holds(known.whole, weighed, place, asked=bool(wishes.lengths)),
+        "holds_for_accepted": {"from": float(_share(chosen)) if meets else 0.0, "below": below},
         "cheaper": _neighbour(chosen, weighed[place - 1]) if place else None,
         "safer": _neighbour(chosen, weighed[place + 1]) if place + 1 < len(weighed) else None,
         "accepted_share_needs": smallest_rounded(known.whole, wishes.accepted),
@@ -52,19 +53,16 @@ def smallest_rounded(histogram: LengthHistogram, accepted: Fraction) -> int:
     return rounded(smallest(histogram, accepted))
 
 
-def _holds(histogram: LengthHistogram, weighed: list[Json], place: int, *, asked: bool) -> Json:
-    """Return the accepted shares for which the choice stays: from one, and below another.
+def _share_below(known: Known, weighed: list[Json], place: int, *, asked: bool) -> float | None:
+    """Return the share of documents that the next smaller length cuts: accepted, it would do.
 
-    Below it lies the next smaller length: a candidate when lengths were asked for, else the
-    multiple of 8 below. ``None`` where nothing smaller can be chosen.
+    The next smaller one is a candidate when lengths were asked for, else the multiple of 8 below;
+    ``None`` where nothing smaller can be chosen.
     """
-    least = _exceeding(histogram, weighed[place]["length"])
     if asked:
-        below = _exceeding(histogram, weighed[place - 1]["length"]) if place else None
-    else:
-        shorter = (weighed[place]["length"] - 1) // ROUNDED * ROUNDED
-        below = _exceeding(histogram, shorter) if shorter > 0 else None
-    return {"from": least, "below": below}
+        return float(_share(weighed[place - 1])) if place else None
+    shorter = (weighed[place]["length"] - 1) // ROUNDED * ROUNDED
+    return _exceeding(known.whole, shorter) if shorter > known.overhead else None
 
 
 def _exceeding(histogram: LengthHistogram, length: int) -> float:

@@ -57,7 +57,7 @@ class Wishes:
     batch: int = 32
     overlap: int | None = None
     model: ModelShape | None = None
-    precision: str = "float16"
+    precision: str = "bfloat16"
 
     def check(self) -> None:
         """Raise SettingsError for what no plan can be made of."""

@@ -25,7 +25,8 @@ NO_MODEL = (
 
 def because(plan: Json) -> list[str]:
     """Return the advice: what the recommended length does, why it, and what would change it."""
-    return [*_choice(plan), *_neighbours(plan), *_changes(plan), *_slices(plan), *_batches(plan)]
+    parts = (_choice, _lost, _neighbours, _changes, _slices, _batches)
+    return [told for part in parts for told in part(plan)]
 
 
 def candidate(plan: Json, length: int) -> Json:
@@ -86,6 +87,30 @@ def _choice(plan: Json) -> Iterator[str]:
         yield f"It is the limit of the model; {needs}."
 
 
+def _lost(plan: Json) -> Iterator[str]:
+    """Say what cutting takes away, and what reading all of the text would take instead."""
+    own = candidate(plan, plan["recommended"]["length"])
+    if not own["truncated_documents"]["numerator"]:
+        return
+    end = (own["cutting"] or {}).get("end")
+    if end is not None:
+        words, inside = end["lost_words"], end["documents_cut_inside_word"]["numerator"]
+        lost = proportion(words["value"])
+        yield (
+            f"Cutting off the end loses {lost} of words, and cuts {plural(inside, 'document')}"
+            " inside a word."
+        )
+    if own["windows"] is not None:
+        windows = own["windows"]
+        split = own["sentences"]
+        parts = f"; split at sentence ends, {plural(split['parts'], 'part')}" if split else ""
+        yield (
+            f"To lose nothing, {plural(windows['windows'], 'window')} that share"
+            f" {plural(windows['overlap'], 'token')} read {proportion(windows['share_read_twice'])}"
+            f" of tokens twice{parts}."
+        )
+
+
 def _neighbours(plan: Json) -> Iterator[str]:
     for which in ("safer", "cheaper"):
         other = plan["recommended"][which]
@@ -103,15 +128,16 @@ def _costs(plan: Json, other: Json) -> str:
 
 def _changes(plan: Json) -> Iterator[str]:
     advice, settings = plan["recommended"], plan["settings"]
-    if not advice["meets_accepted_share"]:
-        return
     holds = advice["holds_for_accepted"]
     least, below = holds["from"], holds["below"]
-    if below is not None and below > least:
-        ends = f"at least {proportion(least)} and less than {proportion(below)}"
-        yield f"The choice stays as long as you accept {ends} of documents cut."
-    elif below is None:
-        yield f"The choice stays whatever share from {proportion(least)} up you accept."
+    ends = [f"at least {proportion(least)}"] if least else []
+    ends += [f"less than {proportion(below)}"] if below is not None else []
+    if ends:
+        yield f"The choice stays as long as you accept {' and '.join(ends)} of documents cut."
+    else:
+        yield "The choice stays whatever share of documents cut you accept."
+    if not advice["meets_accepted_share"]:
+        return
     documents = candidate(plan, advice["length"])["truncated_documents"]
     if documents["high"] is not None and documents["high"] > settings["accept_truncated"]:
         high, accepted = proportion(documents["high"]), percent(settings["accept_truncated"])
