@@ -133,7 +133,7 @@ def _weighed(known: Known, wishes: Wishes, length: int, why: list[str]) -> Json:
         "windows": None if known.paired else windows(whole, overhead, length, overlap),
         "padding": _padding(kept, length, wishes.batch, packs),
         "packs": packs,
-        "cost": _cost(kept, length, wishes, packs),
+        "cost": _cost(kept, length, overhead, wishes, packs),
         "slices": {
             key: {name: own.as_json() for name, own in losses(held, overhead, length).items()}
             for key, held in known.histograms.items()
@@ -221,7 +221,7 @@ def _packs(kept: LengthHistogram, length: int) -> Json:
     }
 
 
-def _cost(kept: LengthHistogram, length: int, wishes: Wishes, packs: Json) -> Json:
+def _cost(kept: LengthHistogram, length: int, overhead: int, wishes: Wishes, packs: Json) -> Json:
     """Return the positions computed for a document and, where a model is known, what they cost."""
     documents, packed = kept.total_documents, packs["best_fit"]["packs"]
     found: Json = {
@@ -233,7 +233,7 @@ def _cost(kept: LengthHistogram, length: int, wishes: Wishes, packs: Json) -> Js
     shape = wishes.model
     one = cost.forward_flops(shape, length)
     ways = {"fixed": documents * one, "packed": packed * one}
-    tokens = kept.total_positions
+    tokens = kept.total_positions - overhead * documents
     found["model"] = {
         "forward_flops_per_sequence": one,
         "attention_share": cost.attention_share(shape, length),
@@ -243,7 +243,8 @@ def _cost(kept: LengthHistogram, length: int, wishes: Wishes, packs: Json) -> Js
                 "training_flops": cost.training_flops(total),
                 "forward_flops_per_document": total / documents,
                 "training_flops_per_document": cost.training_flops(total) / documents,
-                "training_flops_per_kept_position": (
+                "forward_flops_per_kept_token": total / tokens if tokens else None,
+                "training_flops_per_kept_token": (
                     cost.training_flops(total) / tokens if tokens else None
                 ),
             }

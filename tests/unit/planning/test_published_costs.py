@@ -8,7 +8,9 @@ from hypothesis import strategies as st
 
 from auditor.errors import SettingsError
 from auditor.planning import cost
+from auditor.planning.histogram import LengthHistogram
 from auditor.planning.model import ModelShape, parse_model
+from auditor.planning.plan import Known, Wishes, weigh
 
 
 def shape(layers, width, heads, **more):
@@ -138,3 +140,17 @@ def test_the_largest_published_batches_need_alike_memory(batch, length):
     held = cost.activation_bytes(BASE, length, batch, "float16")
     most = cost.activation_bytes(BASE, 384, 12, "float16")
     assert 0.5 * most < held <= most
+
+
+def test_a_plan_prices_documents_and_kept_tokens():
+    """Three notes of 10, 20 and 50 positions, two the template's, cut at 20: by hand."""
+    held = LengthHistogram.of([(10, 1), (20, 1), (50, 1)])
+    own = parse_model("layers=1,width=2,heads=1,inner=8")
+    wishes = Wishes(lengths=(20,), model=own)
+    [found] = weigh(Known({"all": held}, 2, None), wishes, {20: ["asked for"]})
+    one = 20 * 2 * (4 * 2 * 2 + 2 * 2 * 8) + 4 * 20 * 20 * 2
+    fixed = found["cost"]["model"]["fixed"]
+    assert fixed["forward_flops"] == 3 * one
+    assert fixed["forward_flops_per_document"] == one
+    assert fixed["training_flops_per_kept_token"] == 3 * 3 * one / (8 + 18 + 18)
+    assert found["cost"]["model"]["packed"]["forward_flops"] == 3 * one
