@@ -88,6 +88,7 @@ def plan_of(
     batch_bytes: int,
     origin: str | None = None,
     pair: str | None = None,
+    parallel: str | None = None,
     **more: bool,
 ) -> Plan:
     """Return the plan of a run from the options of ``reading`` and settings of its own."""
@@ -99,6 +100,7 @@ def plan_of(
     specs = tuple(VocabularySpec(name, control_strings, spelled, limit) for name in vocabularies)
     options = ReadOptions(
         text=tuple(text.split(",")) if text else (), by=by, origin=origin, pair=pair,
-        unit=cast("Unit", unit), encoding=encoding, batch_bytes=batch_bytes, strict=strict,
+        parallel=parallel, unit=cast("Unit", unit), encoding=encoding, batch_bytes=batch_bytes,
+        strict=strict,
     )  # fmt: skip
     return Plan(corpus, specs, options, words=words, workers=workers, **more)

@@ -28,7 +28,8 @@ class Batch:
     slice key of every document (``lang=pt``); ``origins`` and ``identifiers`` are ``None`` when
     the corpus has none; a document without an origin is its own (``file:line``), one without an
     identifier has an empty one. ``pairs`` holds the second text of each two-part input, ``None``
-    unless asked for. ``set_aside`` and ``mended`` are the flaws met while these were read.
+    unless asked for; ``contents`` what says which records hold the same content, ``None`` for one
+    that has none. ``set_aside`` and ``mended`` are the flaws met while these were read.
     ``read_bytes`` counts the bytes of all files read so far, as they lie on the disk.
     """
 
@@ -40,6 +41,7 @@ class Batch:
     origins: list[str] | None = None
     identifiers: list[str] | None = None
     pairs: list[str] | None = None
+    contents: list[str | None] | None = None
     set_aside: list[Flaw] = field(default_factory=list)
     mended: list[Flaw] = field(default_factory=list)
     read_bytes: int = 0

@@ -28,7 +28,8 @@ class Batcher:
         self._origin = self._reaching(options.origin) if options.origin else None
         self._identifier = reaching(fields.identifier) if fields.identifier else None
         self._pair = _single(options.pair) if options.pair else None
-        self._labelled = bool(self._by or self._origin or self._identifier)
+        self._content = self._reaching(options.parallel) if options.parallel else None
+        self._labelled = bool(self._by or self._origin or self._identifier or self._content)
         self._number = 0
         self._batch = Batch(0, "")
 
@@ -76,6 +77,7 @@ class Batcher:
             origins=None if self._origin is None else [],
             identifiers=None if self._identifier is None else [],
             pairs=None if self._pair is None else [],
+            contents=None if self._content is None else [],
         )
         return self._batch
 
@@ -93,6 +95,11 @@ class Batcher:
             identifier = self._identifier(held)
             absent = identifier is None or identifier is MISSING
             batch.identifiers.append("" if absent else spelled(identifier))
+
+        if self._content is not None and batch.contents is not None:
+            content = self._content(held)
+            absent = content is None or content is MISSING
+            batch.contents.append(None if absent else spelled(content))
 
     def _reaching(self, name: str) -> Reach:
         if name == SOURCE and SOURCE in self._fields.pseudo:

@@ -106,7 +106,8 @@ def _identifier(names: list[str]) -> str | None:
 def _check_named(records: Records, names: list[str], options: ReadOptions, *, plain: bool) -> None:
     if options.text and plain:
         raise CorpusError("plain text has no fields.", hint="Leave --text out.")
-    others = [*options.by, *filter(None, [options.origin, options.identifier])]
+    alone = [options.origin, options.identifier, options.parallel]
+    others = [*options.by, *filter(None, alone)]
     texts = [*options.text, *filter(None, [options.pair])]
     for name in [*texts, *others]:
         pseudo = name == SOURCE and name not in texts

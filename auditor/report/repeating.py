@@ -70,6 +70,21 @@ def _spelled(value: object) -> str:
     return {True: "yes", False: "no"}[value] if isinstance(value, bool) else str(value)
 
 
+def languages_command(document: Json) -> str:
+    """Return the command line that makes this comparison, quoted for a POSIX shell."""
+    sources, settings = document["corpus"]["sources"], document["settings"]
+    named = sources[:_SOURCES] if len(sources) <= _SOURCES else ["CORPUS"]
+    words = ["auditor", "languages", *named]
+    for vocabulary in document["vocabularies"]:
+        words += ["--vocab", vocabulary["source"]]
+    if settings["parallel"]:
+        words += ["--parallel", settings["parallel"]]
+    for reference in settings["references"]:
+        words += ["--reference", reference]
+    usual = {**settings, "graphemes": False}  # this command counts them always
+    return shlex.join([*words, *_options(usual)])
+
+
 def plan_facts(plan: Json) -> list[tuple[str, str]]:
     """Return what the plan was made of, as (name, text): corpus, vocabulary, versions."""
     vocabulary, corpus = plan["vocabulary"], plan["corpus"]

@@ -4,6 +4,7 @@ from __future__ import annotations
 
 from collections.abc import Sequence
 from dataclasses import dataclass, replace
+from typing import TypeVar
 
 import numpy as np
 
@@ -26,6 +27,7 @@ from auditor.tallies.usage import UsageTally
 from auditor.text.stretch import Stretch
 from auditor.vocabulary import Vocabulary, VocabularyFacts, facts_of, open_vocabulary
 
+Kept = TypeVar("Kept")
 # The columns of documents.parquet that every vocabulary adds.
 ROW_COLUMNS = ("tokens", "unknown_tokens", "byte_spelled_characters", "lossless_documents")
 
@@ -54,13 +56,13 @@ class Measurer:
 
     def __init__(self, plan: Plan) -> None:
         self._plan = plan
-        self._vocabularies = [open_vocabulary(spec) for spec in plan.vocabularies]
-        self.facts = [facts_of(vocabulary) for vocabulary in self._vocabularies]
+        self.vocabularies = [open_vocabulary(spec) for spec in plan.vocabularies]
+        self.facts = [facts_of(vocabulary) for vocabulary in self.vocabularies]
         self._batches = 0
         memory.give_back()
         self._contents = [ContentTallies(UsageTally(own.size)) for own in self.facts]
         self._documents = Documents(
-            self._vocabularies,
+            self.vocabularies,
             lambda place, contents: self._contents[place].add(contents),
             words=plan.words,
             graphemes=plan.graphemes,
@@ -80,7 +82,7 @@ class Measurer:
         except (KeyboardInterrupt, SystemExit, MemoryError, AuditError):
             raise
         except BaseException:
-            return self._measure(without_failing(batch, self._vocabularies), source_number)
+            return self._measure(without_failing(batch, self.vocabularies), source_number)
 
     def _measure(self, batch: Batch, source_number: int) -> Outcome:
         self._batches += 1
@@ -166,7 +168,7 @@ def without(batch: Batch, places: set[int], flaws: list[Flaw]) -> Batch:
     """Return ``batch`` without the documents at ``places``, which are set aside as ``flaws``."""
     kept = [place for place in range(len(batch)) if place not in places]
 
-    def only(values: list[str]) -> list[str]:
+    def only(values: list[Kept]) -> list[Kept]:
         return [values[place] for place in kept]
 
     return replace(
@@ -177,6 +179,7 @@ def without(batch: Batch, places: set[int], flaws: list[Flaw]) -> Batch:
         origins=None if batch.origins is None else only(batch.origins),
         identifiers=None if batch.identifiers is None else only(batch.identifiers),
         pairs=None if batch.pairs is None else only(batch.pairs),
+        contents=None if batch.contents is None else only(batch.contents),
         set_aside=[*batch.set_aside, *flaws],
     )
 

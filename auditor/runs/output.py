@@ -24,6 +24,9 @@ FILES = frozenset(
     }
 )  # fmt: skip
 PLAN_FILES = frozenset({"plan.json", "plan.csv", "report.html"})
+LANGUAGE_FILES = frozenset(
+    {"languages.json", "languages.csv", "scripts.csv", "label_mismatches.jsonl", "report.html"}
+)
 
 
 class OutputFolder:
