@@ -42,7 +42,8 @@ def mean_of_ratios(pairs: Sequence[tuple[int, int]]) -> Value:
     """
     ratios = [y / x for y, x in pairs if x]
     lacking = len(pairs) - len(ratios)
-    note = f"{lacking} pairs without tokens on the other side are left out" if lacking else None
+    counted = f"{lacking} pair is" if lacking == 1 else f"{lacking} pairs are"
+    note = f"{counted} left out: no tokens on the other side" if lacking else None
     if not ratios:
         return undefined(note or NO_PAIRS)
     mean = math.fsum(ratios) / len(ratios)

@@ -48,10 +48,15 @@ def figure(held: Json, digits: int = 3) -> str:
     """Return a value with its interval; a dash where it is undefined."""
     if held["value"] is None:
         return "–"
-    value = f"{held['value']:.{digits}g}"
+    value = number(held["value"], digits)
     if held["low"] is None or held["high"] is None:
         return value
-    return f"{value} ({held['low']:.{digits}g} to {held['high']:.{digits}g})"
+    return f"{value} ({number(held['low'], digits)} to {number(held['high'], digits)})"
+
+
+def number(value: float, digits: int = 3) -> str:
+    """Return a number with so many digits, never with a power of ten."""
+    return f"{value:,.0f}" if abs(value) >= 10**digits else f"{value:.{digits}g}"
 
 
 def _costliest(vocabulary: Json) -> Iterator[str]:

@@ -10,7 +10,7 @@ from jinja2 import Environment
 from markupsafe import Markup
 
 from auditor.report import answers, language_answers, language_charts, repeating
-from auditor.report.language_answers import figure
+from auditor.report.language_answers import figure, number
 from auditor.report.page import environment
 from auditor.report.plan_answers import proportion
 from auditor.report.tables import character_name
@@ -48,6 +48,7 @@ def _environment() -> Environment:
     made.filters |= {
         "proportion": proportion,
         "figure": figure,
+        "number": number,
         "character_name": character_name,
     }
     made.globals |= {

@@ -12,7 +12,7 @@ from rich.table import Table
 from rich.text import Text
 
 from auditor.report import answers, language_answers
-from auditor.report.formatting import clean, count, plural
+from auditor.report.formatting import clean, count, plural, value
 from auditor.report.language_answers import figure
 from auditor.report.plan_answers import proportion
 from auditor.report.terminal import line, rendered, written
@@ -74,7 +74,7 @@ def _table(vocabulary: Json) -> Table:
             clean(row["language"], 60) or "(empty)",
             count(row["documents"]),
             figure(cost),
-            figure(figures["fertility"]),
+            value("fertility", figures["fertility"]),
             proportion(figures["byte_spelled_characters"]["value"]),
             proportion(figures["truncated_documents"]["value"]),
         )

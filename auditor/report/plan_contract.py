@@ -2,10 +2,7 @@
 
 from __future__ import annotations
 
-from pathlib import Path
 from typing import Any
-
-import orjson
 
 from auditor.report import contract
 
@@ -13,12 +10,6 @@ Json = dict[str, Any]
 
 FORMAT = "auditor/length-plan"
 VERSION = 1
-
-
-def schema() -> Json:
-    """Return the JSON Schema (draft 2020-12) of `plan.json`."""
-    loaded: Json = orjson.loads((Path(__file__).parent / "plan.schema.json").read_bytes())
-    return loaded
 
 
 def document(parts: Json) -> Json:

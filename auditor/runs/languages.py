@@ -33,6 +33,7 @@ from auditor.runs.reading import (
 )
 from auditor.runs.tallied import AuditTallies
 from auditor.runs.tongues import (
+    CONTRADICTS,
     SPENT,
     LanguageMeasurer,
     LanguageOutcome,
@@ -201,9 +202,9 @@ def _labels(named: Mapping[str, str], own: LanguageTallies, first: list[Mismatch
         label = labels.label_of(text)
         counts = {name: held["documents"] for name, held in own.labels.rows(key)}
         against = {
-            name.removeprefix("contradicts: "): count
+            name.removeprefix(CONTRADICTS): count
             for name, count in counts.items()
-            if name.startswith("contradicts: ")
+            if name.startswith(CONTRADICTS)
         }
         rows.append(
             {
@@ -245,6 +246,14 @@ class _Vocabulary:
     ) -> None:
         self._facts = facts
         self._entries = entries
+        self._mismatched = {
+            key: sum(
+                held["documents"]
+                for name, held in own.labels.rows(key)
+                if name.startswith(CONTRADICTS)
+            )
+            for key in named
+        }
         self._audit = audit
         self._named = named
         self._tallies: VocabularyTallies = own.vocabularies[place]
@@ -335,6 +344,7 @@ class _Vocabulary:
             "cost": self._spent(key),
             "characters": self._characters(key),
             "normal_form": self._form(key),
+            "label_mismatch": self._mismatched[key],
         }
         worth = self._reference_words(key, references)
         row["room"] = parity.room(figures[key], self._facts.room, worth)

@@ -36,11 +36,12 @@ CHARACTER_COLUMNS = ("count", "tokens")
 FORM_COLUMNS = ("documents", "characters", "tokens", "tokens_as_nfc")
 LABEL_COLUMNS = ("documents",)
 NOT_NFC, SPENT = "not in NFC", "spent"
+CONTRADICTS = "contradicts: "
 
 
 @dataclass(frozen=True, slots=True)
 class Mismatch:
-    """A document whose script contradicts its label."""
+    """A document whose script contradicts its label, and its letters outside the label's scripts."""
 
     source: str
     line: int
@@ -214,10 +215,11 @@ def _check_labels(
         label = labels.label_of(key.removeprefix(f"{field_}="))
         against = labels.contradicts(label, own, batch.texts[place])
         if against is not None:
+            outside = sum(count for name, count in own.items() if name not in label.scripts)
             mismatches.append(
-                Mismatch(batch.source, batch.lines[place], label.label, against, own[against])
+                Mismatch(batch.source, batch.lines[place], label.label, against, outside)
             )
-            verdicts.append((place, f"contradicts: {against}"))
+            verdicts.append((place, f"{CONTRADICTS}{against}"))
         if labels.is_mixed(own):
             verdicts.append((place, "mixed"))
         if sum(own.values()) < labels.ENOUGH_LETTERS:

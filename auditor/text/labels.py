@@ -119,7 +119,7 @@ def contradicts(label: Label, letters: Letters, text: str) -> str | None:
     if not label.known or total < ENOUGH_LETTERS or inside > AT_MOST_INSIDE * total:
         return None
     running, words = running_letters(text)
-    outside = {name: n for name, n in running.items() if name in letters.keys() - label.scripts}
+    outside = _joined({n: c for n, c in running.items() if n in letters.keys() - label.scripts})
     most = max(outside, key=lambda name: (outside[name], name), default=None)
     if most is None or outside[most] < ENOUGH_LETTERS:
         return None
@@ -127,8 +127,17 @@ def contradicts(label: Label, letters: Letters, text: str) -> str | None:
 
 
 # Scripts that are written without spaces between words.
-_UNSPACED = frozenset({"Han", "Hiragana", "Katakana", "Thai", "Lao", "Khmer", "Myanmar", "Tibetan"})
+_UNSPACED = frozenset({"Han", "Thai", "Lao", "Khmer", "Myanmar", "Tibetan"})
 _TOGETHER = {"Hiragana": "Han", "Katakana": "Han", "Bopomofo": "Han"}
+
+
+def _joined(letters: Letters) -> Letters:
+    """Return letters by script, kana counted with ideographs, under whose name they stand."""
+    joined: Letters = {}
+    for name, count in letters.items():
+        together = _TOGETHER.get(name, name)
+        joined[together] = joined.get(together, 0) + count
+    return joined
 
 
 def is_mixed(letters: Letters) -> bool:
@@ -136,10 +145,7 @@ def is_mixed(letters: Letters) -> bool:
 
     Kana and ideographs count as one; a text of Hangul and ideographs is mixed.
     """
-    joined: Letters = {}
-    for name, count in letters.items():
-        together = _TOGETHER.get(name, name)
-        joined[together] = joined.get(together, 0) + count
+    joined = _joined(letters)
     total = sum(joined.values())
     good = [n for n in joined.values() if n >= MIXED_LETTERS and n >= MIXED_SHARE * total]
     return len(good) > 1

@@ -13,7 +13,7 @@ import pytest
 from auditor.corpus import ReadOptions
 from auditor.planning.model import parse_model
 from auditor.planning.plan import Wishes
-from auditor.report import plan_contract
+from auditor.report import contract
 from auditor.report.plan_answers import candidate, percent, proportion, times
 from auditor.runs.auditing import assess
 from auditor.runs.audits import audit_at
@@ -102,7 +102,7 @@ def test_the_plan_keeps_its_schema(tmp_path, name, model):
     wishes = Wishes(model=parse_model(model) if model else None)
     plan_from_corpus(plan(NOTES, name), wishes, out=tmp_path / "p")
     written = orjson.loads((tmp_path / "p" / "plan.json").read_bytes())
-    jsonschema.validate(written, plan_contract.schema())
+    jsonschema.validate(written, contract.schema("plan"))
 
 
 def pairs(tmp_path):
@@ -119,7 +119,7 @@ def pairs(tmp_path):
 def test_pairs_have_the_template_of_pairs(tmp_path):
     """Lengths are both texts' tokens and three of the template; a lone text is set aside."""
     found = plan_from_corpus(pairs(tmp_path), Wishes(), out=tmp_path / "p").plan
-    jsonschema.validate(orjson.loads(orjson.dumps(found)), plan_contract.schema())
+    jsonschema.validate(orjson.loads(orjson.dumps(found)), contract.schema("plan"))
     assert (found["overhead"], found["corpus"]["documents"]) == (3, 120)
     assert found["corpus"]["set_aside"]["reasons"] == {"field is null": 1}
     for own in found["candidates"]:
