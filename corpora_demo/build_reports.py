@@ -11,6 +11,7 @@ import shutil
 import sys
 import tempfile
 from collections.abc import Callable
+from dataclasses import replace
 from functools import partial
 from pathlib import Path
 from typing import Any
@@ -20,8 +21,9 @@ import orjson
 from auditor.corpus import ReadOptions
 from auditor.planning.model import parse_model
 from auditor.planning.plan import Wishes
-from auditor.report import page, plan_page
+from auditor.report import language_page, page, plan_page
 from auditor.runs.auditing import assess
+from auditor.runs.languages import compare_languages
 from auditor.runs.lengths import plan_from_corpus
 from auditor.runs.plan import Plan
 from auditor.vocabulary import VocabularySpec
@@ -49,6 +51,9 @@ PLANS = {
 
 
 LENGTH_PLAN = "inspection-notes--length-plan"
+LANGUAGES = "safety-notices--languages"
+# The document that each kind of page is rendered from.
+HELD = {LENGTH_PLAN: "plan.json", LANGUAGES: "languages.json"}
 MODEL = "layers=4,width=256,heads=4,inner=1024"
 
 Render = Callable[[dict[str, Any]], str]
@@ -67,6 +72,11 @@ def build(folder: Path) -> dict[str, Render]:
     wishes = Wishes(model=parse_model(MODEL))
     plan_from_corpus(weighed, wishes, out=folder / LENGTH_PLAN, overwrite=True)
     pages[LENGTH_PLAN] = plan_page.render
+    reading = ReadOptions(by=("lang",), parallel="notice")
+    notices = plan("safety_notices.jsonl", "harbour-bytelevel", "harbour-unigram")
+    compared = replace(notices, read=reading, graphemes=True)
+    compare_languages(compared, ("en",), folder / LANGUAGES, overwrite=True)
+    pages[LANGUAGES] = language_page.render
     return pages
 
 
@@ -92,7 +102,7 @@ def _comparable(path: Path) -> object:
 def _stale_page(name: str, render: Render) -> bool:
     """Return whether the stored page is not what its stored JSON renders to today."""
     stored = SAMPLES / name / "report.html"
-    held = SAMPLES / name / ("plan.json" if name == LENGTH_PLAN else "audit.json")
+    held = SAMPLES / name / HELD.get(name, "audit.json")
     if not (held.is_file() and stored.is_file()):
         return True
     return render(orjson.loads(held.read_bytes())) != stored.read_text(encoding="utf-8")

@@ -41,7 +41,7 @@ CONTRADICTS = "contradicts: "
 
 @dataclass(frozen=True, slots=True)
 class Mismatch:
-    """A document whose script contradicts its label, and its letters outside the label's scripts."""
+    """A document whose script contradicts its label; its letters are those in other scripts."""
 
     source: str
     line: int
