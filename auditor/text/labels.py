@@ -12,9 +12,9 @@ from langcodes.data_dicts import LIKELY_SUBTAGS
 from auditor.text.scripts import script, scripts_of_code
 
 # A text contradicts its label with at least so many letters in running words of another script,
-# and with at most this share of its letters in a script of the label.
+# words running in rows of so many, and with at most this share of its letters in its label's.
 ENOUGH_LETTERS = 40
-ENOUGH_WORDS = 6
+ENOUGH_WORDS = 5
 AT_MOST_INSIDE = 0.1
 # A text mixes scripts when each of two has at least this share of its letters, and so many.
 MIXED_SHARE, MIXED_LETTERS = 0.2, 20
@@ -78,24 +78,42 @@ def near_duplicates(labels: list[str]) -> list[list[str]]:
 Letters = dict[str, int]
 
 
-def running_letters(text: str) -> tuple[Letters, Letters]:
-    """Return the letters in running words of ``text``, and such words, by script.
+def running_letters(text: str) -> Letters:
+    """Return the letters in running words of ``text`` by script.
 
-    Running words are what is left without addresses, quoted text, and whatever looks like a command
-    or a name: words with a digit or a sign inside, words in capitals or with a capital inside.
+    Running words stand in a row of ``ENOUGH_WORDS`` or more on one line, once addresses and quoted
+    text are left out. What looks like a command or a name ends a row: words with a digit or a sign
+    inside, words in capitals or with a capital inside. Scripts that are written without spaces have
+    no words to count; their letters run wherever they stand.
     """
     letters: Letters = {}
-    words: Letters = {}
-    for found in _WORD.finditer(_QUOTED.sub(" ", _ADDRESS.sub(" ", text))):
-        word = _EDGES.sub("", found[0])
-        if _LETTERS.fullmatch(word) and not _looks_like_a_name(word):
+    for part in _QUOTED.sub(" ", _ADDRESS.sub(" ", text)).split("\n"):
+        row: list[str] = []
+        for found in _WORD.finditer(part):
+            word = _EDGES.sub("", found[0])
+            if _LETTERS.fullmatch(word) and not _looks_like_a_name(word):
+                row.append(word)
+            else:
+                _count_row(letters, row)
+                row = []
+                _count_unspaced(letters, word)
+        _count_row(letters, row)
+    return letters
+
+
+def _count_row(letters: Letters, row: list[str]) -> None:
+    for word in row:
+        if len(row) >= ENOUGH_WORDS:
             _count(letters, word)
-            first = script(word[0])
-            words[first] = words.get(first, 0) + 1
-        elif not word.isascii():
-            for part in _LETTERS.findall(word):
-                _count(letters, part)
-    return letters, words
+        else:
+            _count_unspaced(letters, word)
+
+
+def _count_unspaced(letters: Letters, word: str) -> None:
+    if not word.isascii():
+        _count(
+            letters, "".join(c for c in word if _TOGETHER.get(script(c), script(c)) in _UNSPACED)
+        )
 
 
 def _looks_like_a_name(word: str) -> bool:
@@ -118,12 +136,10 @@ def contradicts(label: Label, letters: Letters, text: str) -> str | None:
     inside = sum(count for name, count in letters.items() if name in label.scripts)
     if not label.known or total < ENOUGH_LETTERS or inside > AT_MOST_INSIDE * total:
         return None
-    running, words = running_letters(text)
+    running = running_letters(text)
     outside = _joined({n: c for n, c in running.items() if n in letters.keys() - label.scripts})
     most = max(outside, key=lambda name: (outside[name], name), default=None)
-    if most is None or outside[most] < ENOUGH_LETTERS:
-        return None
-    return most if most in _UNSPACED or words.get(most, 0) >= ENOUGH_WORDS else None
+    return most if most is not None and outside[most] >= ENOUGH_LETTERS else None
 
 
 # Scripts that are written without spaces between words.
