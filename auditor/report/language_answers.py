@@ -129,7 +129,7 @@ def label_answers(document: Json) -> list[str]:
         )
         sentences.append(
             f"The script of {plural(found['contradicting'], 'document')} contradicts the label:"
-            f" {named}; all of them stand in label_mismatches.jsonl."
+            f" {named}; all of them stand in doubtful_labels.jsonl."
         )
     else:
         sentences.append("No document's script contradicts its label.")

@@ -34,6 +34,7 @@ from auditor.runs.reading import (
 from auditor.runs.tallied import AuditTallies
 from auditor.runs.tongues import (
     CONTRADICTS,
+    MIXED,
     SPENT,
     LanguageMeasurer,
     LanguageOutcome,
@@ -44,6 +45,7 @@ from auditor.runs.tongues import (
 from auditor.tallies.groups import ALL
 from auditor.text import labels
 from auditor.vocabulary import VocabularyFacts
+from auditor.vocabulary.forms import FormPair
 
 Json = dict[str, Any]
 
@@ -92,7 +94,7 @@ def compare_languages(
         folder = out or Path("reports") / f"{name}--languages"
         with OutputFolder(folder, overwrite=overwrite, files=LANGUAGE_FILES) as output:
             audit, own = empty_tallies(plan, facts), LanguageTallies.empty(len(facts))
-            with (output.begun / "label_mismatches.jsonl").open("wb") as stream:
+            with (output.begun / "doubtful_labels.jsonl").open("wb") as stream:
                 first: list[Mismatch] = []
                 for found in processes.measured(batches(plan, reading)):
                     _merge(audit, own, found)
@@ -100,10 +102,10 @@ def compare_languages(
                     for mismatch in found.mismatches:
                         stream.write(orjson.dumps(asdict(mismatch)) + b"\n")
             refuse_empty(audit.measured, audit.corpus.set_aside, reading.names)
-            entries: list[dict[str, int]] = []
+            asked: list[tuple[dict[str, int], list[FormPair]]] = []
             for finished in processes.finished():
                 audit.merge_contents(finished.audit.contents)
-                entries = finished.entries_by_script
+                asked = list(zip(finished.entries_by_script, finished.normal_forms, strict=True))
             settings: Json = {
                 "fields": fields.as_json(),
                 "conversations": how,
@@ -111,7 +113,7 @@ def compare_languages(
                 "references": list(references),
             }
             assembled = assemble(plan, facts, audit, reading.names, settings)
-            document = _document(plan, facts, assembled, audit, own, first, references, entries)
+            document = _document(plan, facts, assembled, audit, own, first, references, asked)
             output.write("languages.json", contract.dump(document))
             output.write("languages.csv", tables.as_csv(language_tables.languages(document)))
             output.write("scripts.csv", tables.as_csv(language_tables.scripts(document)))
@@ -143,7 +145,7 @@ def _document(
     own: LanguageTallies,
     first: list[Mismatch],
     references: tuple[str, ...],
-    entries: list[dict[str, int]],
+    asked: list[tuple[dict[str, int], list[FormPair]]],
 ) -> Json:
     field = plan.read.by[0]
     keys = [key for key in audit["vocabularies"][0]["slices"] if key != ALL]
@@ -158,7 +160,7 @@ def _document(
             tallies,
             own,
             named,
-            entries[place],
+            *asked[place],
         )
         for place in range(len(facts))
     ]
@@ -212,7 +214,7 @@ def _labels(named: Mapping[str, str], own: LanguageTallies, first: list[Mismatch
                 "known": label.known,
                 "expected_scripts": sorted(label.scripts),
                 "contradicting": against,
-                "mixed": counts.get("mixed", 0),
+                "mixed": counts.get(MIXED, 0),
                 "few_letters": counts.get("few letters", 0),
             }
         )
@@ -243,9 +245,11 @@ class _Vocabulary:
         own: LanguageTallies,
         named: Mapping[str, str],
         entries: Mapping[str, int],
+        forms: list[FormPair],
     ) -> None:
         self._facts = facts
         self._entries = entries
+        self._forms = forms
         self._mismatched = {
             key: sum(
                 held["documents"]
@@ -285,6 +289,7 @@ class _Vocabulary:
             "spread": self._spread(first),
             "scatter": self._scatter(rows, references),
             "mixture": parity.mixture(counts, POWERS),
+            "normal_forms": [asdict(pair) for pair in self._forms],
         }
 
     def _spread(self, premiums: Mapping[str, Json]) -> Json | None:

@@ -25,7 +25,7 @@ FILES = frozenset(
 )  # fmt: skip
 PLAN_FILES = frozenset({"plan.json", "plan.csv", "report.html"})
 LANGUAGE_FILES = frozenset(
-    {"languages.json", "languages.csv", "scripts.csv", "label_mismatches.jsonl", "report.html"}
+    {"languages.json", "languages.csv", "scripts.csv", "doubtful_labels.jsonl", "report.html"}
 )
 
 

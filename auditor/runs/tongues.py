@@ -30,6 +30,7 @@ from auditor.text.stretch import Stretch
 from auditor.vocabulary import Vocabulary, VocabularyFacts
 from auditor.vocabulary.engine import Ints
 from auditor.vocabulary.entries import entries_by_script
+from auditor.vocabulary.forms import FormPair, normal_forms
 from auditor.vocabulary.spans import correct
 
 CHARACTER_COLUMNS = ("count", "tokens")
@@ -37,14 +38,20 @@ FORM_COLUMNS = ("documents", "characters", "tokens", "tokens_as_nfc")
 LABEL_COLUMNS = ("documents",)
 NOT_NFC, SPENT = "not in NFC", "spent"
 CONTRADICTS = "contradicts: "
+MIXED = "mixed"
 
 
 @dataclass(frozen=True, slots=True)
 class Mismatch:
-    """A document whose script contradicts its label; its letters are those in other scripts."""
+    """A document whose script contradicts its label, or that mixes scripts.
+
+    ``script`` is the one that contradicts, or the one with most letters outside the label's;
+    ``letters`` counts those outside.
+    """
 
     source: str
     line: int
+    finding: str
     label: str
     script: str
     letters: int
@@ -100,10 +107,11 @@ class LanguageOutcome:
 
 @dataclass
 class LanguageFinished:
-    """What an audit hands over, and the entries of each vocabulary by script."""
+    """What an audit hands over; of each vocabulary the entries by script, and normal forms."""
 
     audit: Finished
     entries_by_script: list[dict[str, int]]
+    normal_forms: list[list[FormPair]]
 
 
 class LanguageMeasurer:
@@ -119,9 +127,10 @@ class LanguageMeasurer:
         return self._audit.facts
 
     def finish(self) -> LanguageFinished:
-        """Return what an audit hands over in the end, and the scripts of entries."""
+        """Return what an audit hands over in the end, and what is asked of the vocabularies."""
         entries = [entries_by_script(own.inventory) for own in self._audit.vocabularies]
-        return LanguageFinished(self._audit.finish(), entries)
+        forms = [normal_forms(own.engine) for own in self._audit.vocabularies]
+        return LanguageFinished(self._audit.finish(), entries, forms)
 
     def measure(self, batch: Batch, source_number: int) -> LanguageOutcome:
         """Return the outcome of ``batch``; a document that an engine fails on is set aside."""
@@ -202,7 +211,7 @@ def _check_labels(
     tally: RowsTally,
     groups: list[Grouping],
 ) -> list[Mismatch]:
-    """Tally how each document's script fits its label; return those that contradict it."""
+    """Tally how each document's script fits its label; return those that raise a doubt."""
     letters: list[labels.Letters] = [{} for _ in keys]
     found = letters_by_script(stretch)
     for document, number, count in zip(
@@ -214,14 +223,19 @@ def _check_labels(
     for place, (key, own) in enumerate(zip(keys, letters, strict=True)):
         label = labels.label_of(key.removeprefix(f"{field_}="))
         against = labels.contradicts(label, own, batch.texts[place])
-        if against is not None:
-            outside = sum(count for name, count in own.items() if name not in label.scripts)
+        mixed = labels.is_mixed(own)
+        verdicts += [(place, f"{CONTRADICTS}{against}")] if against is not None else []
+        verdicts += [(place, MIXED)] if mixed else []
+        if against is not None or mixed:
+            finding = MIXED if against is None else "contradicts"
+            outside = {name: n for name, n in own.items() if name not in label.scripts}
+            most = max(outside, key=lambda name: (outside[name], name), default="")
             mismatches.append(
-                Mismatch(batch.source, batch.lines[place], label.label, against, outside)
-            )
-            verdicts.append((place, f"{CONTRADICTS}{against}"))
-        if labels.is_mixed(own):
-            verdicts.append((place, "mixed"))
+                Mismatch(
+                    batch.source, batch.lines[place], finding, label.label, against or most,
+                    sum(outside.values()),
+                )
+            )  # fmt: skip
         if sum(own.values()) < labels.ENOUGH_LETTERS:
             verdicts.append((place, "few letters"))
     names = sorted({verdict for _, verdict in verdicts})

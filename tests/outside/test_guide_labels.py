@@ -38,8 +38,9 @@ def judged(tmp_path_factory):
     spec = VocabularySpec(str(DEMO / "vocabularies" / "harbour-bytelevel"))
     plan = Plan((str(corpus),), (spec,), ReadOptions(by=("lang",)), graphemes=True)
     done = compare_languages(plan, (), folder / "l")
-    listed = (done.folder / "label_mismatches.jsonl").read_bytes().splitlines()
-    lines_listed = {orjson.loads(line)["line"] for line in listed}
+    listed = (done.folder / "doubtful_labels.jsonl").read_bytes().splitlines()
+    found = [orjson.loads(line) for line in listed]
+    lines_listed = {row["line"] for row in found if row["finding"] == "contradicts"}
     return [(row[0], row[3], place in lines_listed) for place, row in enumerate(same, 1)]
 
 

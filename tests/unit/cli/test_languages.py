@@ -19,7 +19,7 @@ def test_it_writes_the_comparison_and_says_where(run):
     folder = Path("reports/safety_notices--harbour-bytelevel--languages")
     assert said.code == 0
     assert {path.name for path in folder.iterdir()} == {
-        "languages.json", "languages.csv", "scripts.csv", "label_mismatches.jsonl", "report.html",
+        "languages.json", "languages.csv", "scripts.csv", "doubtful_labels.jsonl", "report.html",
     }  # fmt: skip
     assert f"Written to {folder}" in said.out
     assert "people who speak it" in " ".join(said.out.split())

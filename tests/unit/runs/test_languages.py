@@ -146,7 +146,7 @@ def test_labels_forms_and_contents_that_are_odd_are_told(tmp_path):
     assert labels["contradicting"] == 1
     [found] = labels["first"]
     assert (found["line"], found["label"], found["script"]) == (3, "el", "Latin")
-    lines = (tmp_path / "l" / "label_mismatches.jsonl").read_bytes().splitlines()
+    lines = (tmp_path / "l" / "doubtful_labels.jsonl").read_bytes().splitlines()
     assert [orjson.loads(line) for line in lines] == [found]
     assert labels["unknown"] == ["(none)", "harbour talk"]
     assert labels["near_duplicates"] == [["en", "eng"]]
