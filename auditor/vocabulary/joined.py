@@ -82,18 +82,26 @@ def _taken_apart(encoded: Encoding, texts: list[str], groups: list[list[int]]) -
     begins = bounds_of(widths.tolist())
     ends_of_groups = begins[2 * np.flatnonzero(last) + 2]
     shift = np.repeat(np.concatenate(([0], ends_of_groups[:-1])), np.diff(encoded.bounds))
-    segment = np.searchsorted(begins[:-1], encoded.starts + shift, side="right") - 1
+    starts = encoded.starts + shift
+    segment = np.searchsorted(begins[:-1], starts, side="right") - 1
+    exact = encoded.exact and bool((encoded.ends + shift <= begins[segment + 1]).all())
     # A fence of no length begins where the next text does: the search finds the text.
     kept = segment % 2 == 0
     begin_of = (begins[segment] - shift)[kept]
-    return _in_order(encoded, kept, order[segment[kept] // 2], begin_of, len(texts))
+    return _in_order(encoded, kept, order[segment[kept] // 2], begin_of, len(texts), exact=exact)
 
 
 def _in_order(
-    encoded: Encoding, kept: Bools, text_of: Ints, begin_of: Ints, count: int
+    encoded: Encoding, kept: Bools, text_of: Ints, begin_of: Ints, count: int, *, exact: bool
 ) -> Encoding:
     """Return the kept tokens by their text; ``begin_of`` is where it begins in its group."""
+    ids, starts, ends = (
+        encoded.ids[kept],
+        encoded.starts[kept] - begin_of,
+        encoded.ends[kept] - begin_of,
+    )
+    bounds = bounds_of(np.bincount(text_of, minlength=count))
+    if (text_of[1:] >= text_of[:-1]).all():
+        return Encoding(ids, starts, ends, bounds, exact)
     order = np.argsort(text_of, kind="stable")
-    starts, ends = encoded.starts[kept] - begin_of, encoded.ends[kept] - begin_of
-    bounds = bounds_of(np.bincount(text_of, minlength=count).tolist())
-    return Encoding(encoded.ids[kept][order], starts[order], ends[order], bounds)
+    return Encoding(ids[order], starts[order], ends[order], bounds, exact)

@@ -2,6 +2,7 @@
 
 from __future__ import annotations
 
+from functools import cached_property
 from itertools import chain
 from typing import Any
 
@@ -11,10 +12,25 @@ import regex
 from tokenizers import Tokenizer
 
 from auditor.errors import VocabularyError
+from auditor.text import properties
 from auditor.vocabulary import bytelevel
-from auditor.vocabulary.engine import Encoding, Inventory, bounds_of, flags
+from auditor.vocabulary.engine import (
+    Bools,
+    Encoding,
+    Ints,
+    Inventory,
+    bounds_of,
+    flags,
+    interleaved,
+)
+from auditor.vocabulary.spelling import Spelling
 
 METASPACE = "\u2581"
+# Characters that Unicode's composed form leaves as they are, whatever stands beside them (UAX #15,
+# section 9): what is settled of an assigned character stays so in later versions.
+_COMPOSED = r"(?V1)[\p{NFC_QC=Y}&&\p{ccc=0}&&\P{Cn}]"
+_ASCII = r"\p{ASCII}"
+_SPLITTERS = frozenset({"ByteLevel", "Split", "Digits", "Punctuation"})
 _BYTE_PIECE = regex.compile(r"<0x[0-9A-F]{2}>")
 
 
@@ -70,7 +86,85 @@ class TokenizersEngine:
         return [step["type"] for step in steps_of(self.description, "decoder")] == ["ByteLevel"]
 
     def encode(self, texts: list[str]) -> Encoding:
-        """Return the tokens of ``texts``."""
+        """Return the tokens of ``texts``.
+
+        Where tokens spell a text that no normaliser alters, byte by byte, spans follow from that;
+        else the library is asked for them, which costs it as much again as the tokens.
+        """
+        chosen = self._may_be_spelled(texts)
+        if not chosen.any():
+            return self.encode_with_offsets(texts)
+        places = np.flatnonzero(chosen)
+        likely = texts if len(places) == len(texts) else [texts[place] for place in places.tolist()]
+        ids, bounds = self._tokens(likely)
+        spelled = self._spelling.spells(ids, bounds, likely)
+        if spelled.all() and likely is texts:
+            return self._spelling.encoding(ids, bounds, texts)
+        return self._in_two_ways(texts, places[spelled])
+
+    def _in_two_ways(self, texts: list[str], spelled: Ints) -> Encoding:
+        """Return the tokens of ``texts``, of which those at ``spelled`` are spelled."""
+        others = np.setdiff1d(np.arange(len(texts)), spelled)
+        own = [texts[place] for place in spelled.tolist()]
+        left = [texts[place] for place in others.tolist()]
+        parts = [
+            (spelled, self._spelling.encoding(*self._tokens(own), own)),
+            (others, self.encode_with_offsets(left)),
+        ]
+        return interleaved(len(texts), parts)
+
+    def _tokens(self, texts: list[str]) -> tuple[Ints, Ints]:
+        """Return the ids of ``texts`` end to end, and the bounds of each text among them."""
+        found = [
+            encoding.ids
+            for encoding in self._library.encode_batch_fast(texts, add_special_tokens=False)
+        ]
+        bounds = bounds_of([len(ids) for ids in found])
+        return np.fromiter(chain.from_iterable(found), np.int64, int(bounds[-1])), bounds
+
+    def _may_be_spelled(self, texts: list[str]) -> Bools:
+        """Return which texts the normaliser leaves alone, none where tokens never spell."""
+        unaltered = self._unaltered
+        if unaltered is None:
+            return np.zeros(len(texts), dtype=np.bool_)
+        joined = "".join(texts)
+        if joined.isascii():
+            return np.ones(len(texts), dtype=np.bool_)
+        altered = ~unaltered[np.frombuffer(joined.encode("utf-32-le"), dtype=np.uint32)]
+        bounds = bounds_of([len(text) for text in texts])
+        before = np.concatenate(([0], np.cumsum(altered)))[bounds]
+        return np.asarray(before[1:] == before[:-1])
+
+    @cached_property
+    def _unaltered(self) -> Bools | None:
+        """Which characters the normaliser leaves alone, each by itself.
+
+        ``None`` where something other than bytes, a pattern and merges decides on the tokens.
+        """
+        model = self.description["model"]
+        splitters = steps_of(self.description, "pre_tokenizer")
+        if (
+            not self._is_byte_level()
+            or model["type"] != "BPE"
+            or any(model.get(name) is not None for name in ("unk_token", "dropout"))
+            or any(model.get(n) for n in ("continuing_subword_prefix", "end_of_word_suffix"))
+            or any(step["type"] not in _SPLITTERS for step in splitters)
+            or any(s.get("add_prefix_space") for s in splitters if s["type"] == "ByteLevel")
+        ):
+            return None
+        steps = {step["type"] for step in steps_of(self.description, "normalizer")} - {"ByteLevel"}
+        if not steps:
+            return properties.table(r"\p{Any}")
+        if not steps <= {"NFC", "NFD", "NFKC", "NFKD"}:
+            return None
+        return properties.table(_COMPOSED if steps == {"NFC"} else _ASCII)
+
+    @cached_property
+    def _spelling(self) -> Spelling:
+        return Spelling.of(self._inventory.entry_bytes or [])
+
+    def encode_with_offsets(self, texts: list[str]) -> Encoding:
+        """Return the tokens of ``texts`` with the spans that the library reports."""
         found = self._library.encode_batch(texts, add_special_tokens=False)
         bounds = bounds_of([len(encoding) for encoding in found])
         count = int(bounds[-1])
@@ -89,6 +183,10 @@ class TokenizersEngine:
 
     def inventory(self) -> Inventory:
         """Return the entries as tables by id."""
+        return self._inventory
+
+    @cached_property
+    def _inventory(self) -> Inventory:
         by_entry: dict[str, int] = self._library.get_vocab(with_added_tokens=True)
         size = max(by_entry.values(), default=-1) + 1
         entries: list[str | None] = [None] * size
