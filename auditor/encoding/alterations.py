@@ -5,7 +5,11 @@ from __future__ import annotations
 from collections.abc import Callable
 from typing import Literal
 
+import numpy as np
 import regex
+
+from auditor.text.stretch import Stretch
+from auditor.vocabulary.engine import Ints
 
 Alteration = Literal[0, 1, 2]
 UNALTERED: Alteration = 0
@@ -27,6 +31,18 @@ class Alterations:
         self._normalize = normalize
         self._alters_ascii = alters_ascii
         self._known: dict[str, Alteration] = {}
+
+    def of_words(self, stretch: Stretch) -> Ints:
+        """Return how the normaliser alters each word of ``stretch``, shape (words,)."""
+        words, joined = stretch.words, stretch.joined
+        found = np.full(len(words), UNALTERED, dtype=np.int64)
+        places = np.arange(len(words))
+        if not self._alters_ascii:
+            before = np.concatenate(([0], np.cumsum(stretch.points >= 0x80)))
+            places = np.flatnonzero(before[words.ends] > before[words.starts])
+        pairs = zip(words.starts[places].tolist(), words.ends[places].tolist(), strict=True)
+        found[places] = [self.of(joined[start:end]) for start, end in pairs]
+        return found
 
     def of(self, word: str) -> Alteration:
         """Return how the normaliser alters ``word`` when it stands alone."""

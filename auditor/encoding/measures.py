@@ -171,7 +171,7 @@ def word_columns(reading: Reading, alterations: Alterations) -> Columns:
     known = reading.unknown_touches == 0
     altered = np.zeros(len(stretch.words), dtype=np.int64)
     if reading.engine.alters:
-        altered = np.array([alterations.of(word) for word in stretch.word_texts], dtype=np.int64)
+        altered = alterations.of_words(stretch)
     edges = np.searchsorted(stretch.words.starts, stretch.bounds)
     return {
         "pieces": _sums(touches, edges),

@@ -2,6 +2,8 @@
 
 from __future__ import annotations
 
+import unicodedata
+
 import pytest
 from hypothesis import given
 from hypothesis import strategies as st
@@ -13,6 +15,7 @@ from auditor.encoding.alterations import (
     Alterations,
     judge,
 )
+from auditor.text.stretch import Stretch
 from tests.unit.small_vocabularies import measured, wordpiece
 
 
@@ -83,3 +86,15 @@ def test_both_kinds_in_one_document(tmp_path):
     vocabulary = wordpiece(tmp_path, ["[UNK]", "the", "cafe", "buoy"])
     found = measured(vocabulary, ["The café BUOY buoy"])
     assert (found["case_folded_words"], found["changed_words"]) == ([2], [1])
+
+
+@given(st.lists(st.text("aBé ÉßK\u0301.", max_size=12), max_size=5), st.booleans())
+def test_words_of_a_stretch_are_judged_like_single_ones(texts, alters_ascii):
+    """With a normaliser that leaves ASCII alone, its words are not even asked for."""
+
+    def normalize(word):
+        return word.lower() if alters_ascii else unicodedata.normalize("NFKD", word)
+
+    stretch = Stretch(texts)
+    found = Alterations(normalize, alters_ascii=alters_ascii).of_words(stretch)
+    assert found.tolist() == [judge(word, normalize(word)) for word in stretch.word_texts]
