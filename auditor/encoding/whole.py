@@ -94,7 +94,7 @@ class WholeTexts:
         self._inventory = vocabulary.inventory
         self._parse_control = parse_control
         engine = vocabulary.engine
-        self._alterations = Alterations(engine.normalize, alters_ascii=engine.alters_ascii)
+        self._alterations = Alterations(engine.normalize, engine.unaltered)
         self._fates = Fates(vocabulary)
         self._broken = BrokenWords(vocabulary.inventory)
 

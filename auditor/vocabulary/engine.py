@@ -46,8 +46,11 @@ class Engine(Protocol):
         """Whether there is a normaliser that may alter words."""
 
     @property
-    def alters_ascii(self) -> bool:
-        """Whether a word of ASCII characters alone may be altered."""
+    def unaltered(self) -> Bools | None:
+        """Which characters the normaliser leaves alone whatever stands beside them, by code point.
+
+        ``None`` where that is not known.
+        """
 
     @property
     def spells_bytes(self) -> bool:

@@ -34,7 +34,7 @@ class JoinedParts:
         self._added = re.compile("|".join(map(re.escape, contents))) if contents else None
         self.has_decoder = self._engine.has_decoder
         self.alters = self._engine.alters
-        self.alters_ascii = self._engine.alters_ascii
+        self.unaltered = self._engine.unaltered
         self.spells_bytes = self._engine.spells_bytes
 
     def encode(self, texts: list[str]) -> Encoding:

@@ -75,12 +75,6 @@ class TokenizersEngine:
         return self._normalizer is not None
 
     @property
-    def alters_ascii(self) -> bool:
-        """Whether the normaliser is more than one of Unicode's forms, which leave ASCII alone."""
-        steps = {step["type"] for step in steps_of(self.description, "normalizer")}
-        return self.alters and not steps <= {"NFC", "NFD", "NFKC", "NFKD", "ByteLevel"}
-
-    @property
     def spells_bytes(self) -> bool:
         """Whether the decoder is the byte-level one alone."""
         return [step["type"] for step in steps_of(self.description, "decoder")] == ["ByteLevel"]
@@ -94,23 +88,18 @@ class TokenizersEngine:
         chosen = self._may_be_spelled(texts)
         if not chosen.any():
             return self.encode_with_offsets(texts)
-        places = np.flatnonzero(chosen)
-        likely = texts if len(places) == len(texts) else [texts[place] for place in places.tolist()]
+        likely = _picked(texts, chosen)
         ids, bounds = self._tokens(likely)
         spelled = self._spelling.spells(ids, bounds, likely)
-        if spelled.all() and likely is texts:
-            return self._spelling.encoding(ids, bounds, texts)
-        return self._in_two_ways(texts, places[spelled])
-
-    def _in_two_ways(self, texts: list[str], spelled: Ints) -> Encoding:
-        """Return the tokens of ``texts``, of which those at ``spelled`` are spelled."""
-        others = np.setdiff1d(np.arange(len(texts)), spelled)
-        own = [texts[place] for place in spelled.tolist()]
-        left = [texts[place] for place in others.tolist()]
-        parts = [
-            (spelled, self._spelling.encoding(*self._tokens(own), own)),
-            (others, self.encode_with_offsets(left)),
-        ]
+        if not spelled.all():
+            lengths = np.diff(bounds)
+            ids, bounds = ids[np.repeat(spelled, lengths)], bounds_of(lengths[spelled])
+            chosen[chosen] = spelled
+        found = self._spelling.encoding(ids, bounds, _picked(texts, chosen))
+        if chosen.all():
+            return found
+        others = self.encode_with_offsets(_picked(texts, ~chosen))
+        parts = [(np.flatnonzero(chosen), found), (np.flatnonzero(~chosen), others)]
         return interleaved(len(texts), parts)
 
     def _tokens(self, texts: list[str]) -> tuple[Ints, Ints]:
@@ -124,8 +113,8 @@ class TokenizersEngine:
 
     def _may_be_spelled(self, texts: list[str]) -> Bools:
         """Return which texts the normaliser leaves alone, none where tokens never spell."""
-        unaltered = self._unaltered
-        if unaltered is None:
+        unaltered = self.unaltered
+        if unaltered is None or not self._splits_bytes:
             return np.zeros(len(texts), dtype=np.bool_)
         joined = "".join(texts)
         if joined.isascii():
@@ -136,28 +125,28 @@ class TokenizersEngine:
         return np.asarray(before[1:] == before[:-1])
 
     @cached_property
-    def _unaltered(self) -> Bools | None:
-        """Which characters the normaliser leaves alone, each by itself.
-
-        ``None`` where something other than bytes, a pattern and merges decides on the tokens.
-        """
-        model = self.description["model"]
-        splitters = steps_of(self.description, "pre_tokenizer")
-        if (
-            not self._is_byte_level()
-            or model["type"] != "BPE"
-            or any(model.get(name) is not None for name in ("unk_token", "dropout"))
-            or any(model.get(n) for n in ("continuing_subword_prefix", "end_of_word_suffix"))
-            or any(step["type"] not in _SPLITTERS for step in splitters)
-            or any(s.get("add_prefix_space") for s in splitters if s["type"] == "ByteLevel")
-        ):
-            return None
+    def unaltered(self) -> Bools | None:
+        """Which characters the normaliser leaves alone, whatever stands beside them."""
         steps = {step["type"] for step in steps_of(self.description, "normalizer")} - {"ByteLevel"}
         if not steps:
-            return properties.table(r"\p{Any}")
+            return np.ones(properties.CODE_POINTS, dtype=np.bool_)
         if not steps <= {"NFC", "NFD", "NFKC", "NFKD"}:
             return None
         return properties.table(_COMPOSED if steps == {"NFC"} else _ASCII)
+
+    @cached_property
+    def _splits_bytes(self) -> bool:
+        """Whether nothing but bytes, patterns and merges decides on the tokens."""
+        model = self.description["model"]
+        splitters = steps_of(self.description, "pre_tokenizer")
+        return (
+            self._is_byte_level()
+            and model["type"] == "BPE"
+            and all(model.get(name) is None for name in ("unk_token", "dropout"))
+            and not any(model.get(n) for n in ("continuing_subword_prefix", "end_of_word_suffix"))
+            and all(step["type"] in _SPLITTERS for step in splitters)
+            and not any(s.get("add_prefix_space") for s in splitters if s["type"] == "ByteLevel")
+        )
 
     @cached_property
     def _spelling(self) -> Spelling:
@@ -242,6 +231,12 @@ class TokenizersEngine:
             unknown = model.get("unk_id")
             return None if unknown is None else int(unknown)
         return by_entry.get(model.get("unk_token") or "")
+
+
+def _picked(texts: list[str], chosen: Bools) -> list[str]:
+    if chosen.all():
+        return texts
+    return [texts[place] for place in np.flatnonzero(chosen).tolist()]
 
 
 def steps_of(description: dict[str, Any], part: str) -> list[dict[str, Any]]:

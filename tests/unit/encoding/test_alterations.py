@@ -2,8 +2,6 @@
 
 from __future__ import annotations
 
-import unicodedata
-
 import pytest
 from hypothesis import given
 from hypothesis import strategies as st
@@ -16,6 +14,7 @@ from auditor.encoding.alterations import (
     judge,
 )
 from auditor.text.stretch import Stretch
+from auditor.vocabulary.tokenizers_engine import TokenizersEngine
 from tests.unit.small_vocabularies import measured, wordpiece
 
 
@@ -88,13 +87,21 @@ def test_both_kinds_in_one_document(tmp_path):
     assert (found["case_folded_words"], found["changed_words"]) == ([2], [1])
 
 
-@given(st.lists(st.text("aBé ÉßK\u0301.", max_size=12), max_size=5), st.booleans())
-def test_words_of_a_stretch_are_judged_like_single_ones(texts, alters_ascii):
-    """With a normaliser that leaves ASCII alone, its words are not even asked for."""
+@pytest.mark.parametrize("form", ["NFC", "NFD", "NFKC", "Lowercase"])
+@given(texts=st.lists(st.text("aBé ÉßK\u0301\u0338.ﬁ中\u212a", max_size=12), max_size=5))
+def test_words_of_a_stretch_are_judged_like_single_ones(form, texts):
+    """Words of characters that the normaliser leaves alone are not shown to it, others are."""
+    model = {"type": "BPE", "vocab": {"a": 0}, "merges": []}
+    description = {"normalizer": {"type": form}, "model": model, "version": "1.0"}
+    engine = TokenizersEngine(description, control_strings="parse", where="test")
+    shown = []
 
     def normalize(word):
-        return word.lower() if alters_ascii else unicodedata.normalize("NFKD", word)
+        shown.append(word)
+        return engine.normalize(word)
 
     stretch = Stretch(texts)
-    found = Alterations(normalize, alters_ascii=alters_ascii).of_words(stretch)
-    assert found.tolist() == [judge(word, normalize(word)) for word in stretch.word_texts]
+    found = Alterations(normalize, engine.unaltered).of_words(stretch)
+    expected = [judge(word, engine.normalize(word)) for word in stretch.word_texts]
+    assert found.tolist() == expected
+    assert form == "Lowercase" or not any(word.isascii() for word in shown)

@@ -58,7 +58,7 @@ class Noting:
     def __init__(self, engine):
         self.asked, self._engine = [], engine
         self.has_decoder, self.spells_bytes = engine.has_decoder, engine.spells_bytes
-        self.alters, self.alters_ascii = engine.alters, engine.alters_ascii
+        self.alters, self.unaltered = engine.alters, engine.unaltered
 
     def encode(self, texts):
         self.asked += texts
