@@ -10,7 +10,7 @@ from __future__ import annotations
 import tempfile
 import weakref
 from bisect import bisect_left
-from collections.abc import Iterable, Iterator, Sequence
+from collections.abc import Callable, Iterable, Iterator, Sequence
 from mmap import ACCESS_READ, mmap
 from pathlib import Path
 from typing import IO, NamedTuple
@@ -106,8 +106,24 @@ class WordsTally(Tally):
     def rows(self) -> Iterator[tuple[BrokenWord, int]]:
         """Yield every row with its count, in sorted order, whatever lies in memory or on disk."""
         for table in self._tables():
-            *row, counts = (column.to_pylist() for column in table.columns)
-            yield from zip(map(BrokenWord._make, zip(*row, strict=True)), counts, strict=True)
+            yield from _rows(table)
+
+    def largest(
+        self, count: int, weigh: Callable[[pa.Table], Ints]
+    ) -> list[tuple[BrokenWord, int]]:
+        """Return up to ``count`` rows of the greatest weight, ties in sorted order.
+
+        ``weigh`` gives the weights of a table with the columns of ``BrokenWord`` and ``count``;
+        rows of a negative weight are left out.
+        """
+        held = _COUNTED.empty_table()
+        for table in self._tables():
+            # Both are in sorted order among equals, and no row of the one comes after the other's.
+            both = pa.concat_tables([held, table])
+            weights = weigh(both)
+            order = np.argsort(-weights, kind="stable")[:count]
+            held = both.take(order[weights[order] >= 0])
+        return list(_rows(held))
 
     def _tables(self) -> Iterator[pa.Table]:
         """Yield every row with its count, in sorted order, some rows at a time."""
@@ -142,6 +158,11 @@ class WordsTally(Tally):
         with tempfile.NamedTemporaryFile(prefix=_PREFIX, delete=False) as file:
             _write(file, self._tables())
         return _received, (self._bound, file.name)
+
+
+def _rows(counted: pa.Table) -> Iterator[tuple[BrokenWord, int]]:
+    *row, counts = (column.to_pylist() for column in counted.columns)
+    return zip(map(BrokenWord._make, zip(*row, strict=True)), counts, strict=True)
 
 
 def _received(bound: int, name: str) -> WordsTally:

@@ -58,6 +58,19 @@ def test_a_tally_travels_and_merges(bound):
     assert list(tally.rows()) == counted(rows + more)
 
 
+@pytest.mark.parametrize("bound", [7, 50, 10**6])
+@pytest.mark.parametrize("count", [1, 20, 10**6])
+def test_the_largest_rows(bound, count):
+    """Against sorting all rows; ties go by the row, and negative weights are left out."""
+    rows = drawn(1500, seed=4)
+    found = filled(rows, bound, 30).largest(
+        count, lambda table: np.asarray(table["count"]) % 5 - np.asarray(table["unknown"]) * 3
+    )
+    weighed = [(n % 5 - row.unknown * 3, row, n) for row, n in counted(rows)]
+    expected = sorted((-weight, row, n) for weight, row, n in weighed if weight >= 0)
+    assert found == [(row, n) for _, row, n in expected[:count]]
+
+
 def test_no_more_is_held_than_the_bound_allows(monkeypatch):
     """What is gathered at once stays within a few times the bound, however many rows there are."""
     sizes = []
