@@ -10,13 +10,21 @@ from __future__ import annotations
 import shutil
 import sys
 import tempfile
+from collections.abc import Callable
+from dataclasses import replace
+from functools import partial
 from pathlib import Path
+from typing import Any
 
 import orjson
 
 from auditor.corpus import ReadOptions
-from auditor.report import page
-from auditor.runs.auditing import Written, assess
+from auditor.planning.model import parse_model
+from auditor.planning.plan import Wishes
+from auditor.report import language_page, page, plan_page
+from auditor.runs.auditing import assess
+from auditor.runs.languages import compare_languages
+from auditor.runs.lengths import plan_from_corpus
 from auditor.runs.plan import Plan
 from auditor.vocabulary import VocabularySpec
 
@@ -42,18 +50,37 @@ PLANS = {
 }
 
 
-def build(folder: Path) -> dict[str, Written]:
-    """Write every sample below ``folder`` and return the audits by name."""
-    done = {}
+LENGTH_PLAN = "inspection-notes--length-plan"
+LANGUAGES = "safety-notices--languages"
+# The document that each kind of page is rendered from.
+HELD = {LENGTH_PLAN: "plan.json", LANGUAGES: "languages.json"}
+MODEL = "layers=4,width=256,heads=4,inner=1024"
+
+Render = Callable[[dict[str, Any]], str]
+
+
+def build(folder: Path) -> dict[str, Render]:
+    """Write every sample below ``folder``; return how each one's page is rendered from its JSON."""
+    pages: dict[str, Render] = {}
     for name, sample in PLANS.items():
-        done[name] = assess(sample, folder / name, overwrite=True)
-        for path in done[name].files:
+        done = assess(sample, folder / name, overwrite=True)
+        pages[name] = partial(page.render, worst=done.worst_words)
+        for path in done.files:
             if path.name in LEFT_OUT:
                 path.unlink()
-    return done
+    weighed = plan("inspection_notes.jsonl", "harbour-sentencepiece")
+    wishes = Wishes(model=parse_model(MODEL))
+    plan_from_corpus(weighed, wishes, out=folder / LENGTH_PLAN, overwrite=True)
+    pages[LENGTH_PLAN] = plan_page.render
+    reading = ReadOptions(by=("lang",), parallel="notice")
+    notices = plan("safety_notices.jsonl", "harbour-bytelevel", "harbour-unigram")
+    compared = replace(notices, read=reading, graphemes=True)
+    compare_languages(compared, ("en",), folder / LANGUAGES, overwrite=True)
+    pages[LANGUAGES] = language_page.render
+    return pages
 
 
-def stale(fresh: Path, done: dict[str, Written]) -> list[str]:
+def stale(fresh: Path, pages: dict[str, Render]) -> list[str]:
     """Return the stored files that differ from ``fresh``, versions of libraries aside."""
     names = {p.relative_to(fresh) for p in fresh.rglob("*") if p.is_file()}
     stored = {p.relative_to(SAMPLES) for p in SAMPLES.rglob("*") if p.is_file()}
@@ -62,23 +89,23 @@ def stale(fresh: Path, done: dict[str, Written]) -> list[str]:
         for name in names & stored
         if name.suffix != ".html" and _comparable(fresh / name) != _comparable(SAMPLES / name)
     ]
-    pages = [f"{name}/report.html" for name in PLANS if _stale_page(name, done[name])]
-    return [*map(str, sorted([*(names ^ stored), *changed])), *pages]
+    old = [f"{name}/report.html" for name, render in pages.items() if _stale_page(name, render)]
+    return [*map(str, sorted([*(names ^ stored), *changed])), *old]
 
 
 def _comparable(path: Path) -> object:
-    if path.name != "audit.json":
+    if path.suffix != ".json":
         return path.read_bytes()
     return {k: v for k, v in orjson.loads(path.read_bytes()).items() if k != "made_with"}
 
 
-def _stale_page(name: str, written: Written) -> bool:
-    """Return whether the stored page is not what its stored audit renders to today."""
-    audit = SAMPLES / name / "audit.json"
+def _stale_page(name: str, render: Render) -> bool:
+    """Return whether the stored page is not what its stored JSON renders to today."""
     stored = SAMPLES / name / "report.html"
-    if not (audit.is_file() and stored.is_file()):
+    held = SAMPLES / name / HELD.get(name, "audit.json")
+    if not (held.is_file() and stored.is_file()):
         return True
-    return page.render(orjson.loads(audit.read_bytes()), written.worst_words) != stored.read_text()
+    return render(orjson.loads(held.read_bytes())) != stored.read_text(encoding="utf-8")
 
 
 def main() -> int:

@@ -4,11 +4,16 @@ from __future__ import annotations
 
 import os
 import sys
+from typing import TYPE_CHECKING
 
 import click
 
-from auditor.report import contract, terminal
-from auditor.runs.auditing import Written
+from auditor.report import contract
+
+if TYPE_CHECKING:
+    from auditor.runs.auditing import Written
+    from auditor.runs.languages import WrittenLanguages
+    from auditor.runs.lengths import WrittenPlan
 
 WIDTH = 80
 
@@ -18,13 +23,47 @@ def print_audit(written: Written, *, as_json: bool, quiet: bool) -> None:
     if as_json:
         click.echo(contract.dump(written.audit).decode(), nl=False)
     elif not quiet:
-        colour = sys.stdout.isatty() and "NO_COLOR" not in os.environ
-        width = min(WIDTH, os.get_terminal_size().columns) if sys.stdout.isatty() else WIDTH
+        from auditor.report import terminal
+
         summary = terminal.summary(
             written.audit,
             files=written.files,
             worst=written.worst_words,
-            width=width,
-            colour=colour,
+            width=_width(),
+            colour=_colour(),
         )
         click.echo(summary, nl=False)
+
+
+def print_plan(written: WrittenPlan, *, as_json: bool, quiet: bool) -> None:
+    """Print the plan: the machine form alone, nothing, or the summary for a person."""
+    if as_json:
+        click.echo(contract.dump(written.plan).decode(), nl=False)
+    elif not quiet:
+        from auditor.report import plan_terminal
+
+        summary = plan_terminal.summary(
+            written.plan, files=written.files, width=_width(), colour=_colour()
+        )
+        click.echo(summary, nl=False)
+
+
+def print_languages(written: WrittenLanguages, *, as_json: bool, quiet: bool) -> None:
+    """Print the comparison: the machine form alone, nothing, or the summary for a person."""
+    if as_json:
+        click.echo(contract.dump(written.document).decode(), nl=False)
+    elif not quiet:
+        from auditor.report import language_terminal
+
+        summary = language_terminal.summary(
+            written.document, files=written.files, width=_width(), colour=_colour()
+        )
+        click.echo(summary, nl=False)
+
+
+def _width() -> int:
+    return min(WIDTH, os.get_terminal_size().columns) if sys.stdout.isatty() else WIDTH
+
+
+def _colour() -> bool:
+    return sys.stdout.isatty() and "NO_COLOR" not in os.environ

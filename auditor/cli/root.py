@@ -11,7 +11,11 @@ import click
 from auditor.errors import AuditError
 
 # Name → module; the module holds a click command called `command`.
-_COMMANDS = {"assess": "auditor.cli.assess"}
+_COMMANDS = {
+    "assess": "auditor.cli.assess",
+    "languages": "auditor.cli.languages",
+    "plan-length": "auditor.cli.plan_length",
+}
 
 BAD_INPUT = 2
 INTERNAL_FAULT = 3

@@ -27,8 +27,10 @@ class Batch:
     ``number`` counts batches from 0 in reading order. ``slices`` maps each field of ``--by`` to the
     slice key of every document (``lang=pt``); ``origins`` and ``identifiers`` are ``None`` when
     the corpus has none; a document without an origin is its own (``file:line``), one without an
-    identifier has an empty one. ``set_aside`` and ``mended`` are the flaws met while these were
-    read. ``read_bytes`` counts the bytes of all files read so far, as they lie on the disk.
+    identifier has an empty one. ``pairs`` holds the second text of each two-part input, ``None``
+    unless asked for; ``contents`` what says which records hold the same content, ``None`` for one
+    that has none. ``set_aside`` and ``mended`` are the flaws met while these were read.
+    ``read_bytes`` counts the bytes of all files read so far, as they lie on the disk.
     """
 
     number: int
@@ -38,6 +40,8 @@ class Batch:
     slices: dict[str, list[str]] = field(default_factory=dict)
     origins: list[str] | None = None
     identifiers: list[str] | None = None
+    pairs: list[str] | None = None
+    contents: list[str | None] | None = None
     set_aside: list[Flaw] = field(default_factory=list)
     mended: list[Flaw] = field(default_factory=list)
     read_bytes: int = 0

@@ -27,7 +27,9 @@ class Batcher:
         self._by = [(name, self._reaching(name)) for name in options.by]
         self._origin = self._reaching(options.origin) if options.origin else None
         self._identifier = reaching(fields.identifier) if fields.identifier else None
-        self._labelled = bool(self._by or self._origin or self._identifier)
+        self._pair = _single(options.pair) if options.pair else None
+        self._content = self._reaching(options.parallel) if options.parallel else None
+        self._labelled = bool(self._by or self._origin or self._identifier or self._content)
         self._number = 0
         self._batch = Batch(0, "")
 
@@ -41,10 +43,16 @@ class Batcher:
         text_of = _itself if plain else self._text
         for line, record, mends in rows:
             text = text_of(record)
+            pair = self._pair(record) if self._pair else ""
+            if isinstance(pair, Damage) and not isinstance(text, Damage):
+                text = pair
             if isinstance(text, Damage):
                 batch.set_aside.append(self._flaw(line, text))
             else:
-                size += len(text) if text.isascii() else len(text.encode())
+                size += _utf8_length(text)
+                if batch.pairs is not None and isinstance(pair, str):
+                    size += _utf8_length(pair)
+                    batch.pairs.append(pair)
                 batch.texts.append(text)
                 batch.lines.append(line)
                 if self._labelled:
@@ -68,6 +76,8 @@ class Batcher:
             slices={name: [] for name in self._options.by},
             origins=None if self._origin is None else [],
             identifiers=None if self._identifier is None else [],
+            pairs=None if self._pair is None else [],
+            contents=None if self._content is None else [],
         )
         return self._batch
 
@@ -86,6 +96,11 @@ class Batcher:
             absent = identifier is None or identifier is MISSING
             batch.identifiers.append("" if absent else spelled(identifier))
 
+        if self._content is not None and batch.contents is not None:
+            content = self._content(held)
+            absent = content is None or content is MISSING
+            batch.contents.append(None if absent else spelled(content))
+
     def _reaching(self, name: str) -> Reach:
         if name == SOURCE and SOURCE in self._fields.pseudo:
             return lambda _: self._batch.source
@@ -100,6 +115,10 @@ class Batcher:
                 where=f"{self._batch.source}:{line}",
             )
         return Flaw(self._batch.source, line, fault.reason, fault.detail)
+
+
+def _utf8_length(text: str) -> int:
+    return len(text) if text.isascii() else len(text.encode())
 
 
 def _itself(record: Any) -> str | Damage:  # noqa: ANN401 - a row of plain text holds a text

@@ -93,7 +93,7 @@ def _resolve(records: Records, options: ReadOptions, *, plain: bool) -> Fields:
     if plain or not records:
         text = () if plain else options.text or CANDIDATES[:1]
         return Fields(text, identifier=options.identifier, pseudo=pseudo)
-    text = options.text or _find_text(records, names)
+    text = options.text or _find_text(records, [n for n in names if n != options.pair])
     values = [reach(record, text[0]) for record in records]
     conversation = len(text) == 1 and any(map(is_conversation, values))
     return Fields(text, conversation, options.identifier or _identifier(names), pseudo)
@@ -106,9 +106,11 @@ def _identifier(names: list[str]) -> str | None:
 def _check_named(records: Records, names: list[str], options: ReadOptions, *, plain: bool) -> None:
     if options.text and plain:
         raise CorpusError("plain text has no fields.", hint="Leave --text out.")
-    others = [*options.by, *filter(None, [options.origin, options.identifier])]
-    for name in [*options.text, *others]:
-        pseudo = name == SOURCE and name not in options.text
+    alone = [options.origin, options.identifier, options.parallel]
+    others = [*options.by, *filter(None, alone)]
+    texts = [*options.text, *filter(None, [options.pair])]
+    for name in [*texts, *others]:
+        pseudo = name == SOURCE and name not in texts
         if pseudo or (not records and not plain) or _held(records, name):
             continue
         there = ", ".join(names) if names else f"only the pseudo-field {SOURCE}, the file's name"

@@ -22,7 +22,9 @@ class ReadOptions:
     r"""The settings of reading.
 
     ``text`` names the fields that hold the text, several are joined by ``\n``; empty: found by the
-    rules of `resolve_fields`. ``by``, ``origin`` and ``identifier`` name fields; a dot reaches into
+    rules of `resolve_fields`. ``pair`` names the field of the second text, for two-part inputs;
+    ``parallel`` the one that says which records hold the same content. ``by``, ``origin`` and
+    ``identifier`` name fields; a dot reaches into
     objects (``meta.lang``) where no field has the whole name. ``unit`` is what one document is in
     plain text (see `auditor.corpus.lines`). ``encoding`` is that of whole files, ``None`` is UTF-8.
     A batch holds at most ``batch_documents`` documents and ``batch_bytes`` UTF-8 bytes of text, or
@@ -35,6 +37,8 @@ class ReadOptions:
     by: tuple[str, ...] = ()
     origin: str | None = None
     identifier: str | None = None
+    pair: str | None = None
+    parallel: str | None = None
     unit: Unit = "record"
     encoding: str | None = None
     batch_bytes: int = 1 << 19

@@ -28,7 +28,14 @@ def read(
     """
     options.check()
     batcher = Batcher(options, fields)
-    named = {*fields.text, *options.by, options.origin, fields.identifier}
+    named = {
+        *fields.text,
+        *options.by,
+        options.origin,
+        options.pair,
+        options.parallel,
+        fields.identifier,
+    }
     wanted = frozenset(name for name in named if name is not None)
     before = 0
     for source in sources:

@@ -91,6 +91,16 @@ REPEATED_DOCUMENTS = Figure(
     of_documents=True, needs=("repeats",),
 )  # fmt: skip
 
+# What may be compared between languages, where words are not: asked for by `languages` alone.
+COST_FIGURES: tuple[Figure, ...] = (
+    Figure("tokens_per_character", "tokens", "characters", "tokens per character",
+           "All tokens divided by all code points.", share=False),
+    Figure("tokens_per_grapheme", "tokens", "graphemes", "tokens per grapheme",
+           "All tokens divided by all extended grapheme clusters.", share=False),
+    Figure("tokens_per_byte", "tokens", "bytes", "tokens per byte",
+           "All tokens divided by all UTF-8 bytes.", share=False),
+)  # fmt: skip
+
 WHY_UNDEFINED = {
     "unknown": "the vocabulary has no unknown entry",
     "limit": "no position limit is known: name one with --limit",

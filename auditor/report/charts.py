@@ -146,7 +146,7 @@ def cost(key: str, field: str, vocabularies: Sequence[Json], keys: Sequence[str]
         name: [own["slices"][name]["figures"][RANKED_BY] for own in vocabularies] for name in keys
     }
     ends = (figure["high"] or figure["value"] for row in figures.values() for figure in row)
-    plot = Plot(_label_width(keys), max((end for end in ends if end), default=1.0))
+    plot = Plot(label_width(keys), max((end for end in ends if end), default=1.0))
     height = len(vocabularies) * _ROW + _GAP
     bottom = _TOP + len(keys) * height
     parts = [_grid(tick, plot, bottom) for tick in plot.ticks()]
@@ -174,7 +174,7 @@ class Plot:
         return [step * number for number in range(int(self.reach / step) + 1)]
 
 
-def _label_width(keys: Sequence[str]) -> float:
+def label_width(keys: Sequence[str]) -> float:
     """Return the share of the narrowest drawing that the longest label takes."""
     cells = max((cell_len(clean(key, 60)) for key in keys), default=0)
     return (min(cells, _LABEL_CELLS) * _CELL + 2 * _CELL) / _NARROWEST

@@ -37,9 +37,9 @@ def _unicode_of_regex() -> str | None:
     return found.group(1) if found else None
 
 
-def schema() -> Json:
-    """Return the JSON Schema (draft 2020-12) of `audit.json`."""
-    loaded: Json = orjson.loads((Path(__file__).parent / "audit.schema.json").read_bytes())
+def schema(name: str = "audit") -> Json:
+    """Return the JSON Schema (draft 2020-12) of `audit.json`, `plan.json` or `languages.json`."""
+    loaded: Json = orjson.loads((Path(__file__).parent / f"{name}.schema.json").read_bytes())
     return loaded
 
 

@@ -39,7 +39,7 @@ def render(audit: Json, worst: WorstWords) -> str:
     ``worst`` holds (vocabulary, [(word, count), …]) in the order of `tables.worst_words`; empty
     when the audit was made without excerpts. The same input gives the same text.
     """
-    template = _environment().get_template("report.html.jinja")
+    template = environment().get_template("report.html.jinja")
     return template.render(
         audit=audit,
         slice_sets=[_set(number, audit, *found) for number, found in enumerate(sets(audit))],
@@ -53,7 +53,8 @@ def render(audit: Json, worst: WorstWords) -> str:
 
 
 @cache
-def _environment() -> Environment:
+def environment() -> Environment:
+    """Return the templates with the filters that write numbers and text."""
     environment = Environment(
         autoescape=True, loader=PackageLoader("auditor.report"), undefined=StrictUndefined,
         trim_blocks=True, lstrip_blocks=True, keep_trailing_newline=True,

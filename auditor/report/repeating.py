@@ -41,12 +41,73 @@ def _options(settings: Json) -> Iterator[str]:
     yield from (f"--{name}" for name in _FLAGS if settings.get(name))
 
 
+def plan_command(plan: Json) -> str:
+    """Return the command line that makes this length plan, quoted for a POSIX shell.
+
+    A plan made from an audit is named by the corpus, which gives the same numbers and more.
+    """
+    sources, settings = plan["corpus"]["sources"], plan["settings"]
+    named = sources[:_SOURCES] if len(sources) <= _SOURCES else ["CORPUS"]
+    words = ["auditor", "plan-length", *named, "--vocab", plan["vocabulary"]["source"]]
+    return shlex.join([*words, *_options(settings), *_plan_options(settings)])
+
+
+def _plan_options(settings: Json) -> Iterator[str]:
+    if settings["candidates"]:
+        yield from ("--candidates", ",".join(map(str, settings["candidates"])))
+    usual = {"accept_truncated": 0.01, "batch": 32, "overlap": None, "pair": None}
+    for name, value in usual.items():
+        if settings[name] != value:
+            yield from (f"--{name.replace('_', '-')}", str(settings[name]))
+    if settings["model"]:
+        shape = {name: value for name, value in settings["model"].items() if value is not None}
+        spelled = {name: _spelled(value) for name, value in shape.items()}
+        yield from ("--model", ",".join(f"{name}={value}" for name, value in spelled.items()))
+        yield from ("--precision", settings["precision"])
+
+
+def _spelled(value: object) -> str:
+    return {True: "yes", False: "no"}[value] if isinstance(value, bool) else str(value)
+
+
+def languages_command(document: Json) -> str:
+    """Return the command line that makes this comparison, quoted for a POSIX shell."""
+    sources, settings = document["corpus"]["sources"], document["settings"]
+    named = sources[:_SOURCES] if len(sources) <= _SOURCES else ["CORPUS"]
+    words = ["auditor", "languages", *named]
+    for vocabulary in document["vocabularies"]:
+        words += ["--vocab", vocabulary["source"]]
+    if settings["parallel"]:
+        words += ["--parallel", settings["parallel"]]
+    for reference in settings["references"]:
+        words += ["--reference", reference]
+    usual = {**settings, "graphemes": False}  # this command counts them always
+    return shlex.join([*words, *_options(usual)])
+
+
+def plan_facts(plan: Json) -> list[tuple[str, str]]:
+    """Return what the plan was made of, as (name, text): corpus, vocabulary, versions."""
+    vocabulary, corpus = plan["vocabulary"], plan["corpus"]
+    return [
+        ("lengths from", plan["measured"]),
+        ("corpus digest", corpus["digest"]),
+        ("records set aside", count(corpus["set_aside"]["records"])),
+        ("vocabulary", vocabulary["source"]),
+        ("vocabulary digest", vocabulary["digest"]),
+        ("overhead", count(plan["overhead"])),
+        ("limit", count(vocabulary["limit"]["value"])),
+        *((name, _text(found)) for name, found in plan["made_with"].items()),
+    ]
+
+
 def command_notes(audit: Json) -> list[str]:
     """Return what the command cannot say by itself."""
     sources = audit["corpus"]["sources"]
     notes = []
     if len(sources) > _SOURCES:
-        notes.append(f"CORPUS stands for {plural(len(sources), 'file')}, listed in audit.json.")
+        notes.append(
+            f"CORPUS stands for {plural(len(sources), 'file')}, listed in the JSON beside."
+        )
     if audit["settings"].get("pattern") is not None:
         notes.append("FILE holds the pattern that stands under Settings.")
     return notes

@@ -42,13 +42,18 @@ def summary(
     ``files`` are the paths of what was written; ``worst`` the costliest words of each vocabulary,
     of which a few are shown. Text of the corpus comes without control characters.
     """
+    return rendered(_parts(audit, files, worst), width=width, colour=colour)
+
+
+def rendered(parts: Iterable[RenderableType], *, width: int, colour: bool) -> str:
+    """Return ``parts`` one below the other, as text ``width`` cells wide, with colours if asked."""
     console = Console(
         file=StringIO(), width=width, force_terminal=colour, no_color=not colour,
         color_system="standard" if colour else None, legacy_windows=False,
         markup=False, emoji=False, highlight=False, _environ={},
     )  # fmt: skip
     with console.capture() as captured:
-        for part in _parts(audit, files, worst):
+        for part in parts:
             console.print(part)
     return "".join(f"{line.rstrip(' ')}\n" for line in captured.get().split("\n")[:-1])
 
@@ -70,7 +75,7 @@ def _parts(audit: Json, files: Sequence[Path], worst: WorstWords) -> Iterable[Re
         if question.key == "slices":
             yield from _slices(audit, grouped)
         elif question.key == "aside":
-            yield from map(_line, answers.set_aside(corpus))
+            yield from map(line, answers.set_aside(corpus))
         else:
             yield _beside(vocabularies, [question.answer(own, audit) for own in vocabularies])
         if question.key == "words":
@@ -78,10 +83,10 @@ def _parts(audit: Json, files: Sequence[Path], worst: WorstWords) -> Iterable[Re
     yield Text()
     for told in answers.cautions(audit, sliced=bool(grouped)):
         yield Text(told, "italic")
-    yield from _written(files)
+    yield from written(files)
 
 
-def _line(sentence: Sentence) -> RenderableType:
+def line(sentence: Sentence) -> RenderableType:
     """Return a sentence whose further lines are indented."""
     table = Table.grid(padding=(0, 1, 0, 0))
     table.add_column(width=1)
@@ -93,9 +98,9 @@ def _line(sentence: Sentence) -> RenderableType:
 def _beside(vocabularies: Sequence[Json], told: Sequence[list[Sentence]]) -> RenderableType:
     """Return the answers of each vocabulary: up to three side by side, more below each other."""
     if len(vocabularies) == 1:
-        return Group(*map(_line, told[0]))
+        return Group(*map(line, told[0]))
     names = [_name(own) for own in vocabularies]
-    columns = [Group(*map(_line, sentences)) for sentences in told]
+    columns = [Group(*map(line, sentences)) for sentences in told]
     if len(vocabularies) > _SIDE_BY_SIDE:
         return Group(*(part for pair in zip(names, columns, strict=True) for part in pair))
     table = Table.grid(padding=(0, 2, 0, 0), expand=True)
@@ -112,7 +117,7 @@ def _name(vocabulary: Json) -> Text:
 
 def _slices(audit: Json, grouped: list[tuple[str, list[str]]]) -> Iterable[RenderableType]:
     if not grouped:
-        yield _line(("No field was named with --by: every document is in one slice.",))
+        yield line(("No field was named with --by: every document is in one slice.",))
     vocabularies = audit["vocabularies"]
     tables = [vocabularies]
     if len(vocabularies) > _SIDE_BY_SIDE:
@@ -184,11 +189,11 @@ def _words(worst: WorstWords) -> Iterable[RenderableType]:
         if rows:
             yield table
     if any(rows for _, rows in worst):
-        yield _line((answers.EXCERPTS,))
-    yield _line(("Every word and character that costs or is lost: words.csv, characters.csv.",))
+        yield line((answers.EXCERPTS,))
+    yield line(("Every word and character that costs or is lost: words.csv, characters.csv.",))
 
 
-def _written(files: Sequence[Path]) -> Iterable[RenderableType]:
+def written(files: Sequence[Path]) -> Iterable[RenderableType]:
     """Return the folder of what was written, once, then the names of its files."""
     if not files:
         return

@@ -47,12 +47,13 @@ def _corpus(tallies: AuditTallies, sources: list[str]) -> Json:
         "sources": sources,
         "digest": tallies.corpus.digest.digest,
         **counts,
-        "set_aside": _flaws(tallies.corpus.set_aside, sources),
-        "mended": _flaws(tallies.corpus.mended, sources),
+        "set_aside": flaws_as_json(tallies.corpus.set_aside, sources),
+        "mended": flaws_as_json(tallies.corpus.mended, sources),
     }
 
 
-def _flaws(tally: FlawsTally, sources: list[str]) -> Json:
+def flaws_as_json(tally: FlawsTally, sources: list[str]) -> Json:
+    """Return counts by reason, and the first flaws with their places."""
     first = [
         {
             "source": sources[flaw.source],
@@ -82,10 +83,11 @@ def _vocabulary(
         slices[ALL]["figures"][REPEATED_DOCUMENTS.name] = repeated.as_json()
     used = contents.usage.occurrences
     slices[ALL]["usage"] = usage.describe(used, facts.entries, facts.rankable)
-    return {**_facts(facts), "slices": slices}
+    return {**facts_as_json(facts), "slices": slices}
 
 
-def _facts(facts: VocabularyFacts) -> Json:
+def facts_as_json(facts: VocabularyFacts) -> Json:
+    """Return what is known of a vocabulary without a corpus."""
     return {
         "name": facts.name,
         "source": facts.source,

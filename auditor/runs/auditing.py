@@ -5,37 +5,35 @@ from __future__ import annotations
 import resource
 import sys
 import time
-from collections.abc import Callable, Iterator
+from collections.abc import Callable
 from dataclasses import dataclass, replace
+from functools import partial
 from pathlib import Path
 from typing import Any
 
-from auditor.corpus import Batch, Fields, Source, find_sources, read, resolve_fields
+from auditor.corpus import find_sources, resolve_fields
 from auditor.encoding.documents import SeparationError, Tale
-from auditor.errors import CorpusError, SettingsError
+from auditor.errors import SettingsError
 from auditor.report import contract, page, tables
 from auditor.runs.assembling import assemble
-from auditor.runs.measuring import empty_tallies
+from auditor.runs.measuring import Measurer, empty_tallies
 from auditor.runs.output import DocumentRows, OutputFolder
 from auditor.runs.plan import Plan
 from auditor.runs.processes import Processes, choose_workers
+from auditor.runs.reading import (
+    Progress,
+    Reading,
+    batches,
+    default_name,
+    refuse_empty,
+    with_conversations,
+)
 from auditor.runs.tallied import AuditTallies
 from auditor.tallies.words import BrokenWord
 from auditor.vocabulary import VocabularyFacts
-from auditor.vocabulary.conversation import Renderer, chat_template
-from auditor.vocabulary.locate import locate
 
 Json = dict[str, Any]
 WorstWords = list[tuple[str, list[tuple[BrokenWord, int]]]]
-
-
-@dataclass(frozen=True, slots=True)
-class Progress:
-    """How far a run is: bytes read of the files, of how many (``None``: unknown), documents."""
-
-    read_bytes: int
-    total_bytes: int | None
-    documents: int
 
 
 @dataclass(frozen=True)
@@ -62,8 +60,8 @@ def assess(
     began = time.monotonic()
     sources = find_sources(plan.corpus)
     fields = resolve_fields(sources, plan.read)
-    plan, how = _with_conversations(plan, fields)
-    reading = _Reading(sources, fields, how, progress)
+    plan, how = with_conversations(plan, fields)
+    reading = Reading(sources, fields, how, progress)
     try:
         return _audited(plan, reading, out, overwrite=overwrite, began=began)
     except SeparationError as fault:
@@ -73,26 +71,9 @@ def assess(
         return _audited(again, reading, out, overwrite=overwrite, began=began, fault=str(fault))
 
 
-@dataclass(frozen=True)
-class _Reading:
-    sources: list[Source]
-    fields: Fields
-    conversations: str | None
-    progress: Callable[[Progress], None] | None
-
-    @property
-    def names(self) -> list[str]:
-        return [source.name for source in self.sources]
-
-    @property
-    def total(self) -> int | None:
-        sizes = [source.size for source in self.sources]
-        return None if any(size is None for size in sizes) else sum(size or 0 for size in sizes)
-
-
 def _audited(
     plan: Plan,
-    reading: _Reading,
+    reading: Reading,
     out: Path | None,
     *,
     overwrite: bool,
@@ -100,19 +81,19 @@ def _audited(
     fault: str | None = None,
 ) -> Written:
     workers = choose_workers(plan.workers, reading.total)
-    with Processes(plan, workers) as processes:
+    with Processes(partial(Measurer, plan), workers) as processes:
         facts = _named_apart(processes.facts)
-        folder = out or Path("reports") / default_name(plan, facts)
+        folder = out or Path("reports") / default_name(plan, [own.name for own in facts])
         with OutputFolder(folder, overwrite=overwrite) as output:
             rows = DocumentRows(output.begun, [own.name for own in facts], plan.read.by)
             tallies, tale = empty_tallies(plan, facts), Tale()
             try:
-                for outcome in processes.measured(_batches(plan, reading)):
+                for outcome in processes.measured(batches(plan, reading)):
                     tallies.merge_documents(outcome.corpus, outcome.documents)
                     rows.add(outcome)
             finally:
                 rows.close()
-            _refuse_empty(tallies, reading.names)
+            refuse_empty(tallies.measured, tallies.corpus.set_aside, reading.names)
             for finished in processes.finished():
                 tallies.merge_contents(finished.contents)
                 tale.merge(finished.tale)
@@ -128,19 +109,6 @@ def _audited(
             return Written(audit, worst, folder, output.finish())
 
 
-def default_name(plan: Plan, facts: list[VocabularyFacts]) -> str:
-    """Return the name of the folder for ``plan``: <corpus>--<vocabulary>."""
-    first = plan.corpus[0]
-    corpus = "stdin" if first == "-" else Path(first.rstrip("/*?")).name.split(".")[0] or "corpus"
-    more = f"-and-{len(plan.corpus) - 1}-more" if len(plan.corpus) > 1 else ""
-    vocabulary = facts[0].name if len(facts) == 1 else f"{facts[0].name}-and-{len(facts) - 1}-more"
-    return _cleaned(f"{corpus}{more}--{vocabulary}")
-
-
-def _cleaned(name: str) -> str:
-    return "".join(c if c.isalnum() or c in "-_." else "-" for c in name).strip(".") or "audit"
-
-
 def _named_apart(facts: list[VocabularyFacts]) -> list[VocabularyFacts]:
     """Return the facts, those that share a name renamed to what the user wrote."""
     names = [own.name for own in facts]
@@ -151,53 +119,6 @@ def _named_apart(facts: list[VocabularyFacts]) -> list[VocabularyFacts]:
     if repeated is not None:
         raise SettingsError("one vocabulary is named twice.", hint="Name it once.", where=repeated)
     return apart
-
-
-def _with_conversations(plan: Plan, fields: Fields) -> tuple[Plan, str | None]:
-    """Return the plan with the way to render conversations, and how it is called in the settings.
-
-    All vocabularies must see one text: with several, a template is used only if they share it.
-    """
-    if not fields.conversation:
-        return plan, None
-    folders = [locate(spec.argument)[0] for spec in plan.vocabularies]
-    roots = [folder if folder.is_dir() else folder.parent for folder in folders]
-    templates = {chat_template(root) for root in roots}
-    if len(templates) == 1 and None not in templates:
-        renderer = Renderer.from_folder(roots[0])
-        return replace(plan, read=replace(plan.read, render=renderer.render)), "chat template"
-    reason = "the vocabularies' templates differ" if len(templates) > 1 else "no chat template"
-    return plan, f"contents joined by line feeds ({reason})"
-
-
-def _batches(plan: Plan, reading: _Reading) -> Iterator[tuple[Batch, int]]:
-    numbers = {name: number for number, name in enumerate(reading.names)}
-    reached = documents = 0
-
-    def note(read_bytes: int) -> None:
-        nonlocal reached
-        reached = read_bytes
-
-    for batch in read(reading.sources, plan.read, reading.fields, progress=note):
-        documents += len(batch)
-        yield batch, numbers[batch.source]
-        if reading.progress is not None:
-            reading.progress(Progress(reached, reading.total, documents))
-
-
-def _refuse_empty(tallies: AuditTallies, names: list[str]) -> None:
-    if tallies.measured:
-        return
-    aside = tallies.corpus.set_aside.reasons.total()
-    raise CorpusError(
-        f"no document to measure; {aside} records were set aside."
-        if aside
-        else "no document to measure: the corpus is empty.",
-        hint=f"Most frequent reason: {tallies.corpus.set_aside.reasons.most_common(1)[0][0]}."
-        if aside
-        else None,
-        where=", ".join(names[:3]),
-    )
 
 
 def _worst_words(plan: Plan, facts: list[VocabularyFacts], tallies: AuditTallies) -> WorstWords:

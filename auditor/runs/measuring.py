@@ -2,7 +2,9 @@
 
 from __future__ import annotations
 
+from collections.abc import Sequence
 from dataclasses import dataclass, replace
+from typing import TypeVar
 
 import numpy as np
 
@@ -23,8 +25,9 @@ from auditor.tallies.corpus import DigestTally, FlawPlace
 from auditor.tallies.groups import groupings
 from auditor.tallies.usage import UsageTally
 from auditor.text.stretch import Stretch
-from auditor.vocabulary import VocabularyFacts, facts_of, open_vocabulary
+from auditor.vocabulary import Vocabulary, VocabularyFacts, facts_of, open_vocabulary
 
+Kept = TypeVar("Kept")
 # The columns of documents.parquet that every vocabulary adds.
 ROW_COLUMNS = ("tokens", "unknown_tokens", "byte_spelled_characters", "lossless_documents")
 
@@ -53,13 +56,13 @@ class Measurer:
 
     def __init__(self, plan: Plan) -> None:
         self._plan = plan
-        self._vocabularies = [open_vocabulary(spec) for spec in plan.vocabularies]
-        self.facts = [facts_of(vocabulary) for vocabulary in self._vocabularies]
+        self.vocabularies = [open_vocabulary(spec) for spec in plan.vocabularies]
+        self.facts = [facts_of(vocabulary) for vocabulary in self.vocabularies]
         self._batches = 0
         memory.give_back()
         self._contents = [ContentTallies(UsageTally(own.size)) for own in self.facts]
         self._documents = Documents(
-            self._vocabularies,
+            self.vocabularies,
             lambda place, contents: self._contents[place].add(contents),
             words=plan.words,
             graphemes=plan.graphemes,
@@ -79,35 +82,13 @@ class Measurer:
         except (KeyboardInterrupt, SystemExit, MemoryError, AuditError):
             raise
         except BaseException:
-            return self._measure(self._without_failing(batch), source_number)
-
-    def _without_failing(self, batch: Batch) -> Batch:
-        faults = {
-            place: fault
-            for place in range(len(batch))
-            if (fault := self._fault(batch.texts[place]))
-        }
-        flaws = [
-            Flaw(batch.source, batch.lines[place], "the engine fails on it", fault)
-            for place, fault in faults.items()
-        ]
-        return without(batch, set(faults), flaws)
-
-    def _fault(self, text: str) -> str | None:
-        for vocabulary in self._vocabularies:
-            try:
-                vocabulary.engine.decode(vocabulary.engine.encode([text]).ids_by_document())
-            except (KeyboardInterrupt, SystemExit, MemoryError):
-                raise
-            except BaseException as fault:
-                return f"{vocabulary.name}: {type(fault).__name__}"
-        return None
+            return self._measure(without_failing(batch, self.vocabularies), source_number)
 
     def _measure(self, batch: Batch, source_number: int) -> Outcome:
         self._batches += 1
         if self._batches % memory.EVERY == 0:
             memory.give_back()
-        corpus = _corpus(self._plan, batch, source_number)
+        corpus = corpus_tallies(self._plan, batch, source_number)
         if not batch.texts:
             return Outcome(batch, corpus, [], {}, [])
         stretch = Stretch(batch.texts, words=self._plan.words)
@@ -126,7 +107,38 @@ class Measurer:
         return Outcome(batch, corpus, documents, counted.text, [_kept(own) for own in rows])
 
 
-def _corpus(plan: Plan, batch: Batch, source_number: int) -> CorpusTallies:
+def without_failing(batch: Batch, vocabularies: Sequence[Vocabulary]) -> Batch:
+    """Return ``batch`` without the documents that an engine fails on, which are set aside."""
+    faults = {
+        place: fault
+        for place in range(len(batch))
+        if (fault := _fault(_texts(batch, place), vocabularies))
+    }
+    flaws = [
+        Flaw(batch.source, batch.lines[place], "the engine fails on it", fault)
+        for place, fault in faults.items()
+    ]
+    return without(batch, set(faults), flaws)
+
+
+def _texts(batch: Batch, place: int) -> list[str]:
+    pair = [] if batch.pairs is None else [batch.pairs[place]]
+    return [batch.texts[place], *pair]
+
+
+def _fault(texts: list[str], vocabularies: Sequence[Vocabulary]) -> str | None:
+    for vocabulary in vocabularies:
+        try:
+            vocabulary.engine.decode(vocabulary.engine.encode(texts).ids_by_document())
+        except (KeyboardInterrupt, SystemExit, MemoryError):
+            raise
+        except BaseException as fault:
+            return f"{vocabulary.name}: {type(fault).__name__}"
+    return None
+
+
+def corpus_tallies(plan: Plan, batch: Batch, source_number: int) -> CorpusTallies:
+    """Return what ``batch`` adds to what is known of the corpus without a vocabulary."""
     corpus = CorpusTallies(DigestTally(distinct=plan.repeats))
     corpus.digest.add(batch.texts)
     corpus.set_aside.add(_place(flaw, source_number) for flaw in batch.set_aside)
@@ -156,7 +168,7 @@ def without(batch: Batch, places: set[int], flaws: list[Flaw]) -> Batch:
     """Return ``batch`` without the documents at ``places``, which are set aside as ``flaws``."""
     kept = [place for place in range(len(batch)) if place not in places]
 
-    def only(values: list[str]) -> list[str]:
+    def only(values: list[Kept]) -> list[Kept]:
         return [values[place] for place in kept]
 
     return replace(
@@ -166,6 +178,8 @@ def without(batch: Batch, places: set[int], flaws: list[Flaw]) -> Batch:
         slices={field: only(keys) for field, keys in batch.slices.items()},
         origins=None if batch.origins is None else only(batch.origins),
         identifiers=None if batch.identifiers is None else only(batch.identifiers),
+        pairs=None if batch.pairs is None else only(batch.pairs),
+        contents=None if batch.contents is None else only(batch.contents),
         set_aside=[*batch.set_aside, *flaws],
     )
 

@@ -23,17 +23,24 @@ FILES = frozenset(
         "documents.parquet", "set_aside.jsonl", "report.html",
     }
 )  # fmt: skip
+PLAN_FILES = frozenset({"plan.json", "plan.csv", "report.html"})
+LANGUAGE_FILES = frozenset(
+    {"languages.json", "languages.csv", "scripts.csv", "label_mismatches.jsonl", "report.html"}
+)
 
 
 class OutputFolder:
     """Writes into a hidden folder beside ``path``, and puts it in its place when all is written.
 
-    A folder that holds an earlier audit is replaced; one that holds anything else is refused
+    A folder that holds nothing but ``files`` is replaced; one that holds anything else is refused
     unless ``overwrite``. Use as a context manager: leaving by an exception removes what was begun.
     """
 
-    def __init__(self, path: Path, *, overwrite: bool = False) -> None:
+    def __init__(
+        self, path: Path, *, overwrite: bool = False, files: frozenset[str] = FILES
+    ) -> None:
         self.path = path
+        self._files = files
         self._overwrite = overwrite
         self._refuse_foreign()
 
@@ -44,10 +51,10 @@ class OutputFolder:
             raise OutputError(
                 "there is a file of that name.", hint="Name another --out.", where=str(self.path)
             )
-        foreign = sorted({entry.name for entry in self.path.iterdir()} - FILES)
+        foreign = sorted({entry.name for entry in self.path.iterdir()} - self._files)
         if foreign and not self._overwrite:
             raise OutputError(
-                f"the folder holds what no audit wrote ({', '.join(foreign[:5])}).",
+                f"the folder holds what this command never writes ({', '.join(foreign[:5])}).",
                 hint="Name another --out, or allow it with --overwrite.",
                 where=str(self.path),
             )

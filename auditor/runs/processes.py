@@ -4,20 +4,21 @@ from __future__ import annotations
 
 import os
 from collections import deque
-from collections.abc import Iterable, Iterator
+from collections.abc import Callable, Iterable, Iterator
 from concurrent.futures import Future, ProcessPoolExecutor
 from multiprocessing import get_context
 from multiprocessing.synchronize import Barrier
+from typing import Any, Generic, Protocol, Self, TypeVar
 
-from auditor.corpus import Batch
-from auditor.runs.measuring import Finished, Measurer, Outcome
-from auditor.runs.plan import Plan
 from auditor.vocabulary import VocabularyFacts
 
 # Below this many bytes one process is done before others have started.
 WORTH_SPREADING = 16 << 20
 # Seconds that a worker waits for the others when the run ends; a batch takes far less.
 _PATIENCE = 3600
+
+Outcome_co = TypeVar("Outcome_co", covariant=True)
+Finished_co = TypeVar("Finished_co", covariant=True)
 
 
 def choose_workers(asked: int, corpus_bytes: int | None) -> int:
@@ -29,48 +30,65 @@ def choose_workers(asked: int, corpus_bytes: int | None) -> int:
     return len(os.sched_getaffinity(0)) if hasattr(os, "sched_getaffinity") else os.cpu_count() or 1
 
 
-class Processes:
-    """A way to measure batches; use as a context manager. ``facts`` are of the vocabularies."""
+class Measures(Protocol[Outcome_co, Finished_co]):
+    """What one process does: measure batches, and hand over what it kept when all are measured."""
 
-    def __init__(self, plan: Plan, workers: int) -> None:
+    @property
+    def facts(self) -> list[VocabularyFacts]:
+        """The facts of the vocabularies that are measured with."""
+
+    def measure(self, *args: Any, **kwargs: Any) -> Outcome_co:  # noqa: ANN401 - any task
+        """Return the outcome of one task."""
+
+    def finish(self) -> Finished_co:
+        """Return what was gathered over all tasks."""
+
+
+class Processes(Generic[Outcome_co, Finished_co]):
+    """A way to measure batches; use as a context manager. ``facts`` are of the vocabularies.
+
+    ``make`` builds what measures, once in each process; it must pickle.
+    """
+
+    def __init__(self, make: Callable[[], Measures[Outcome_co, Finished_co]], workers: int) -> None:
         self._workers = workers
         self._pool: ProcessPoolExecutor | None = None
-        self._local: Measurer | None = None
+        self._local: Measures[Outcome_co, Finished_co] | None = None
         if workers == 1:
-            self._local = Measurer(plan)
+            self._local = make()
             self.facts: list[VocabularyFacts] = self._local.facts
             return
         # Spawned, never forked: the engines' threads do not survive a fork.
         context = get_context("spawn")
         meeting = context.Barrier(workers)
         self._pool = ProcessPoolExecutor(
-            workers, mp_context=context, initializer=_start, initargs=(plan, meeting)
+            workers, mp_context=context, initializer=_start, initargs=(make, meeting)
         )
         self.facts = self._pool.submit(_facts).result()
 
-    def measured(self, batches: Iterable[tuple[Batch, int]]) -> Iterator[Outcome]:
-        """Yield the outcome of each (batch, source number), in their order.
+    def measured(self, tasks: Iterable[tuple[Any, ...]]) -> Iterator[Outcome_co]:
+        """Yield the outcome of each task, in their order.
 
         At most two batches a worker wait at a time, so that memory does not grow with the corpus.
         """
         if self._pool is not None:
-            yield from self._spread(self._pool, batches)
+            yield from self._spread(self._pool, tasks)
         elif self._local is not None:
-            for batch, source in batches:
-                yield self._local.measure(batch, source)
+            for task in tasks:
+                yield self._local.measure(*task)
 
     def _spread(
-        self, pool: ProcessPoolExecutor, batches: Iterable[tuple[Batch, int]]
-    ) -> Iterator[Outcome]:
-        waiting: deque[Future[Outcome]] = deque()
-        for batch, source in batches:
-            waiting.append(pool.submit(_measure, batch, source))
+        self, pool: ProcessPoolExecutor, tasks: Iterable[tuple[Any, ...]]
+    ) -> Iterator[Outcome_co]:
+        waiting: deque[Future[Outcome_co]] = deque()
+        for task in tasks:
+            waiting.append(pool.submit(_measure, *task))
             if len(waiting) >= 2 * self._workers:
                 yield waiting.popleft().result()
         while waiting:
             yield waiting.popleft().result()
 
-    def finished(self) -> Iterator[Finished]:
+    def finished(self) -> Iterator[Finished_co]:
         """Yield what each process hands over when all batches are measured."""
         if self._pool is not None:
             waiting = [self._pool.submit(_finish) for _ in range(self._workers)]
@@ -78,7 +96,7 @@ class Processes:
         elif self._local is not None:
             yield self._local.finish()
 
-    def __enter__(self) -> Processes:
+    def __enter__(self) -> Self:
         return self
 
     def __exit__(self, kind: object, value: object, trace: object) -> None:
@@ -87,34 +105,37 @@ class Processes:
 
 
 class _Worker:
-    """What a worker process holds for its whole life: one plan, and the vocabularies opened."""
+    """What a worker process holds for its whole life: what measures, its vocabularies opened."""
 
-    plan: Plan
+    make: Callable[[], Measures[Any, Any]]
     meeting: Barrier
-    measurer: Measurer | None = None
+    own: Measures[Any, Any] | None
 
 
-def _start(plan: Plan, meeting: Barrier) -> None:
-    """Remember the plan; each worker is one of several, so that the library gets one thread."""
+_OWN = _Worker()
+
+
+def _start(make: Callable[[], Measures[Any, Any]], meeting: Barrier) -> None:
+    """Remember what to make; each worker is one of several: the library gets one thread."""
     os.environ.setdefault("TOKENIZERS_PARALLELISM", "false")
-    _Worker.plan, _Worker.meeting = plan, meeting
+    _OWN.make, _OWN.meeting, _OWN.own = make, meeting, None
 
 
-def _own() -> Measurer:
-    if _Worker.measurer is None:
-        _Worker.measurer = Measurer(_Worker.plan)
-    return _Worker.measurer
+def _own() -> Measures[Any, Any]:
+    if _OWN.own is None:
+        _OWN.own = _OWN.make()
+    return _OWN.own
 
 
 def _facts() -> list[VocabularyFacts]:
     return _own().facts
 
 
-def _measure(batch: Batch, source: int) -> Outcome:
-    return _own().measure(batch, source)
+def _measure(*task: Any) -> Any:  # noqa: ANN401 - as `Measures` has it
+    return _own().measure(*task)
 
 
-def _finish() -> Finished:
+def _finish() -> Any:  # noqa: ANN401
     # All workers meet here, so that none of them takes the call that is meant for another.
-    _Worker.meeting.wait(_PATIENCE)
+    _OWN.meeting.wait(_PATIENCE)
     return _own().finish()

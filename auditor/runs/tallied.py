@@ -34,7 +34,7 @@ class DocumentTallies:
         """Return empty tallies for a template of ``overhead`` tokens."""
         columns = (*COLUMNS, "graphemes") if graphemes else COLUMNS
         return cls(
-            MomentsTally(columns, PAIRS),
+            MomentsTally(columns, (*PAIRS, ("tokens", "graphemes")) if graphemes else PAIRS),
             OriginsTally(columns) if origins else None,
             LengthsTally(overhead),
             WhitespaceTally(KINDS),

@@ -90,7 +90,8 @@ class MomentsTally(Tally):
     def moments(self, key: str, y: str, x: str) -> Moments:
         """Return the moments of two columns over the documents of the slice."""
         row: Any = self._sums[key]
-        squares = (row[self._product[pair]] for pair in ((y, y), (x, x), (y, x)))
+        crossed = (y, x) if (y, x) in self._product else (x, y)
+        squares = (row[self._product[pair]] for pair in ((y, y), (x, x), crossed))
         documents = self.total(key, "documents")
         return Moments(documents, self.total(key, y), self.total(key, x), *map(int, squares))
 

@@ -18,7 +18,7 @@ ZERO_WIDTH = frozenset("\u200b\u200c\u200d\u2060\ufeff")
 
 
 @cache
-def _every_character() -> str:
+def every_character() -> str:
     """Return every code point in order; surrogates, which no text holds, stand as U+0000."""
     before, after = map(chr, range(0xD800)), map(chr, range(0xE000, CODE_POINTS))
     return "".join(before) + "\0" * 0x800 + "".join(after)
@@ -31,7 +31,7 @@ def table(property_class: str) -> BoolTable:
     ``property_class`` is a class in `regex` syntax such as ``\\p{L}``.
     """
     found = np.zeros(CODE_POINTS, dtype=np.bool_)
-    for match in regex.finditer(f"{property_class}+", _every_character()):
+    for match in regex.finditer(f"{property_class}+", every_character()):
         found[match.start() : match.end()] = True
     found.setflags(write=False)
     return found

@@ -4,7 +4,14 @@ from __future__ import annotations
 
 from functools import cache
 
+import numpy as np
+import numpy.typing as npt
 import regex
+
+from auditor.text.properties import CODE_POINTS, every_character
+
+Ints = npt.NDArray[np.int64]
+Points = npt.NDArray[np.uint32]
 
 # The commonest come first: the look-up tries them in this order.
 _NAMES = """
@@ -42,3 +49,55 @@ def script(character: str) -> str:
     """Return the long script name of one character, ``Unknown`` when it has none."""
     match = _pattern().fullmatch(character)
     return str(match.lastgroup) if match else "Unknown"
+
+
+# Names by number; the last one stands for characters that have no script.
+NAMES = (*SCRIPTS, "Unknown")
+COMMON, INHERITED = SCRIPTS.index("Common"), SCRIPTS.index("Inherited")
+_UNSEEN = -1
+_NUMBERS = np.full(CODE_POINTS, _UNSEEN, dtype=np.int16)
+
+
+def script_numbers(points: Points) -> Ints:
+    """Return the script of each code point as an index into ``NAMES``, shape (characters,)."""
+    found = _NUMBERS[points]
+    if (found == _UNSEEN).any():
+        for point in np.unique(points[found == _UNSEEN]).tolist():
+            _NUMBERS[point] = NAMES.index(script(chr(point)))
+        found = _NUMBERS[points]
+    return found.astype(np.int64)
+
+
+@cache
+def scripts_of_code(code: str) -> frozenset[str]:
+    """Return the long names that a script code of ISO 15924 stands for; empty if there is none.
+
+    Codes for writing systems of several scripts (``Jpan``, ``Kore``) or for one variant of a script
+    (``Hans``, ``Latf``) are those of UTS #39, table 1, and of ISO 15924 itself.
+    """
+    if code in _SEVERAL:
+        return frozenset(_SEVERAL[code].split())
+    try:
+        pattern = regex.compile(rf"\p{{Script={code}}}")
+    except regex.error:
+        return frozenset()
+    found = pattern.search(every_character())
+    return frozenset({script(found[0])}) if found else frozenset()
+
+
+_SEVERAL = {
+    "Jpan": "Han Hiragana Katakana",
+    "Kore": "Hangul Han",
+    "Hans": "Han",
+    "Hant": "Han",
+    "Hanb": "Han Bopomofo",
+    "Hrkt": "Hiragana Katakana",
+    "Aran": "Arabic",
+    "Latf": "Latin",
+    "Latg": "Latin",
+    "Cyrs": "Cyrillic",
+    "Syrj": "Syriac",
+    "Syre": "Syriac",
+    "Syrn": "Syriac",
+    "Geok": "Georgian",
+}

@@ -24,7 +24,7 @@ def test_many_files_are_not_listed():
     audit = material.audit()
     audit["corpus"]["sources"] = [f"notes-{number}.txt" for number in range(11)]
     assert shlex.split(command(audit))[2] == "CORPUS"
-    assert command_notes(audit) == ["CORPUS stands for 11 files, listed in audit.json."]
+    assert command_notes(audit) == ["CORPUS stands for 11 files, listed in the JSON beside."]
 
 
 def test_a_pattern_is_named_as_a_file():

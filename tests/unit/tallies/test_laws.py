@@ -22,6 +22,8 @@ from auditor.tallies.corpus import DigestTally, FlawPlace, FlawsTally
 from auditor.tallies.groups import groupings
 from auditor.tallies.lengths import LengthsTally
 from auditor.tallies.moments import MomentsTally, OriginsTally
+from auditor.tallies.parallel import ParallelTally
+from auditor.tallies.rows import RowsTally
 from auditor.tallies.usage import UsageTally
 from auditor.tallies.whitespace import COLUMNS, WhitespaceTally
 from auditor.tallies.words import BrokenWord, WordsTally
@@ -90,6 +92,20 @@ def fill_digest(tally, rows, _):
     tally.add(row[4] for row in rows)
 
 
+def fill_rows(tally, rows, _):
+    every = np.arange(len(rows))
+    counts = np.array([[row[0], row[1]] for row in rows], dtype=np.int64)
+    names = ["a", "b", "c"]
+    places = np.array([row[1] % 3 for row in rows], dtype=np.int64)
+    tally.add(every, places, names, counts, groups(rows))
+
+
+def fill_parallel(tally, rows, _):
+    contents = [row[3] if row[1] else None for row in rows]
+    table = np.array([[row[0]] for row in rows], dtype=np.int64)
+    tally.add(contents, [row[2] for row in rows], table)
+
+
 # Each tally: how an empty one is made, one of other settings (None: it has none), how it is filled.
 TALLIES = {
     MomentsTally: (
@@ -109,6 +125,12 @@ TALLIES = {
         fill_whitespace,
     ),
     UsageTally: (lambda: UsageTally(7), lambda: UsageTally(8), fill_usage),
+    RowsTally: (lambda: RowsTally(("x", "y")), lambda: RowsTally(("x",)), fill_rows),
+    ParallelTally: (
+        lambda: ParallelTally(("tokens",)),
+        lambda: ParallelTally(("words",)),
+        fill_parallel,
+    ),
     WordsTally: (lambda: WordsTally(in_memory=2), None, fill_words),
     CharactersTally: (CharactersTally, None, fill_characters),
     FlawsTally: (FlawsTally, None, fill_flaws),
