@@ -5,7 +5,11 @@ from __future__ import annotations
 from collections.abc import Callable
 from typing import Literal
 
+import numpy as np
 import regex
+
+from auditor.text.stretch import Stretch
+from auditor.vocabulary.engine import Bools, Ints
 
 Alteration = Literal[0, 1, 2]
 UNALTERED: Alteration = 0
@@ -21,17 +25,31 @@ _REMEMBERED = 50_000
 
 
 class Alterations:
-    """Judges words by ``normalize``, each distinct word once (as long as memory is bounded)."""
+    """Judges words by ``normalize``, each distinct word once (as long as memory is bounded).
 
-    def __init__(self, normalize: Callable[[str], str], *, alters_ascii: bool = True) -> None:
+    ``unaltered`` is a table of the characters that it leaves alone whatever stands beside them:
+    words of these are not shown to it.
+    """
+
+    def __init__(self, normalize: Callable[[str], str], unaltered: Bools | None = None) -> None:
         self._normalize = normalize
-        self._alters_ascii = alters_ascii
+        self._unaltered = unaltered
         self._known: dict[str, Alteration] = {}
+
+    def of_words(self, stretch: Stretch) -> Ints:
+        """Return how the normaliser alters each word of ``stretch``, shape (words,)."""
+        words, joined = stretch.words, stretch.joined
+        found = np.full(len(words), UNALTERED, dtype=np.int64)
+        places = np.arange(len(words))
+        if self._unaltered is not None:
+            odd = np.concatenate(([0], np.cumsum(~self._unaltered[stretch.points])))
+            places = np.flatnonzero(odd[words.ends] > odd[words.starts])
+        pairs = zip(words.starts[places].tolist(), words.ends[places].tolist(), strict=True)
+        found[places] = [self.of(joined[start:end]) for start, end in pairs]
+        return found
 
     def of(self, word: str) -> Alteration:
         """Return how the normaliser alters ``word`` when it stands alone."""
-        if not self._alters_ascii and word.isascii():
-            return UNALTERED
         known = self._known.get(word)
         if known is None:
             if len(self._known) >= _REMEMBERED:

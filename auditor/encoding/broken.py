@@ -7,15 +7,18 @@ from dataclasses import dataclass
 from typing import Any
 
 import numpy as np
+import pyarrow as pa
+import pyarrow.compute as pc
 
+from auditor.encoding.dotted import DOT, Held, Touching, dotted
 from auditor.encoding.measures import Reading
-from auditor.tallies.words import BrokenWord
-from auditor.vocabulary.engine import Ints, Inventory
+from auditor.tallies.words import BrokenWord, table_of
+from auditor.text.stretch import Stretch
+from auditor.vocabulary.engine import Bools, Ints, Inventory
 
 # A word and the ids of the tokens that touch it.
 Key = tuple[Any, ...]
 
-_DOT = "·"
 _REMEMBERED = 30_000
 # A word as long as this is shown by its beginning; its count stays with the whole word's pieces.
 LONGEST_SHOWN = 120
@@ -25,16 +28,21 @@ LONGEST_SHOWN = 120
 class Broken:
     """The broken words of a stretch.
 
-    ``rows`` are distinct; ``row_of`` and ``document_of`` have one item an occurrence.
+    ``rows`` is a table as `WordsTally` takes it, without counts, whose rows are mostly distinct;
+    ``row_of`` and ``document_of`` have one item an occurrence.
     """
 
-    rows: list[BrokenWord]
+    rows: pa.Table
     row_of: Ints
     document_of: Ints
 
 
 class BrokenWords:
-    """Finds the words of a stretch that two tokens or more touch, or an unknown one."""
+    """Finds the words of a stretch that two tokens or more touch, or an unknown one.
+
+    Words that lie in whole characters of tokens end to end are written all at once; the others,
+    with bytes or unknown tokens in them, one by one.
+    """
 
     def __init__(self, inventory: Inventory) -> None:
         self._inventory = inventory
@@ -42,40 +50,52 @@ class BrokenWords:
         if inventory.unknown is not None:
             plain[inventory.unknown] = False
         # Whether the piece is shown by the characters it holds, by id.
+        self._plain_ids: Bools = plain
         self._plain: list[bool] = plain.tolist()
         self._known: dict[Key, BrokenWord] = {}
 
     def find(self, reading: Reading) -> Broken:
-        """Return the broken words of ``reading``, in order."""
-        words = reading.stretch.words
+        """Return the broken words of ``reading``."""
+        stretch = reading.stretch
         hit = np.flatnonzero((reading.touches >= 2) | (reading.unknown_touches > 0))
+        held = Held.of(reading.spans)
+        words = held.over(stretch.words.starts[hit], stretch.words.ends[hit])
+        plain = words.end_to_end(held, self._plain_ids[held.ids]) & _short_and_undotted(
+            stretch, words
+        )
+        strings = dotted(stretch.points, words.chosen(plain), held)
+        written = strings.cast(pa.string()).dictionary_encode()
+        rest = words.chosen(~plain)
+        unknown = (reading.unknown_touches[hit[~plain]] > 0).tolist()
         numbers: dict[BrokenWord, int] = {}
-        row_of = [numbers.setdefault(row, len(numbers)) for row in self._rows(reading, hit)]
-        documents = reading.stretch.document_of(words.starts[hit])
-        return Broken(list(numbers), np.array(row_of, dtype=np.int64), documents)
+        odd = [
+            numbers.setdefault(row, len(numbers))
+            for row in self._rows(stretch.joined, held, rest, unknown)
+        ]
+        first = np.asarray(written.indices).astype(np.int64)
+        second = np.array(odd, dtype=np.int64) + len(written.dictionary)
+        begins = np.concatenate((words.begins[plain], rest.begins))
+        return Broken(
+            pa.concat_tables([_table(written.dictionary), table_of(list(numbers))]),
+            np.concatenate((first, second)),
+            stretch.document_of(begins),
+        )
 
-    def _rows(self, reading: Reading, hit: Ints) -> Iterator[BrokenWord]:
-        spans, words = reading.spans, reading.stretch.words
-        held = np.flatnonzero(spans.ends > spans.starts)
-        if (np.diff(spans.starts[held]) < 0).any():
-            held = held[np.argsort(spans.starts[held], kind="stable")]
-        starts, ends = spans.starts[held], spans.ends[held]
-        firsts = np.searchsorted(np.maximum.accumulate(ends), words.starts[hit], side="right")
-        stops = np.searchsorted(starts, words.ends[hit], side="left")
-        tokens = (spans.ids[held].tolist(), starts.tolist(), ends.tolist())
+    def _rows(
+        self, joined: str, held: Held, words: Touching, unknown: list[bool]
+    ) -> Iterator[BrokenWord]:
         quads = zip(
-            hit.tolist(),
-            words.starts[hit].tolist(),
-            firsts.tolist(),
-            stops.tolist(),
-            (reading.unknown_touches[hit] > 0).tolist(),
+            words.begins.tolist(),
+            words.ends.tolist(),
+            words.firsts.tolist(),
+            words.stops.tolist(),
+            unknown,
             strict=True,
         )
-        texts = reading.stretch.word_texts
-        for place, begin, first, stop, unknown in quads:
-            key = (texts[place], *tokens[0][first:stop])
-            row = self._known.get(key)
-            yield row or self._remember(key, [part[first:stop] for part in tokens], begin, unknown)
+        for begin, end, first, stop, lost in quads:
+            tokens = [part[first:stop].tolist() for part in (held.ids, held.starts, held.ends)]
+            key = (joined[begin:end], *tokens[0])
+            yield self._known.get(key) or self._remember(key, tokens, begin, lost)
 
     def _remember(
         self,
@@ -108,12 +128,27 @@ class BrokenWords:
             else:
                 shown.append(f"⟨{self._inventory.entries[number]}⟩")
             reached = max(reached, end)
-        return _DOT.join(shown)
+        return DOT.join(shown)
 
     def _bytes(self, number: int) -> str:
         if self._inventory.entry_bytes is not None:
             return (self._inventory.entry_bytes[number] or b"").hex(" ").upper()
         return (self._inventory.entries[number] or "")[3:5]
+
+
+def _short_and_undotted(stretch: Stretch, words: Touching) -> Bools:
+    """Return the words that are shown in full, and from which the dots can be taken again."""
+    dots = np.concatenate(([0], np.cumsum(stretch.points == ord(DOT))))
+    short = words.ends - words.begins + words.stops - words.firsts - 1 <= LONGEST_SHOWN
+    return np.asarray(short & (dots[words.ends] == dots[words.begins]))
+
+
+def _table(broken: pa.StringArray) -> pa.Table:
+    """Return the rows of words that are ``broken`` without loss."""
+    pieces = pc.add(pc.cast(pc.count_substring(broken, DOT), pa.int64()), 1)
+    word = pc.replace_substring(broken, DOT, "")
+    unknown = pa.array(np.zeros(len(broken), dtype=np.int64))
+    return pa.table([word, broken, pieces, unknown], names=list(BrokenWord._fields))
 
 
 def _shortened(text: str) -> str:

@@ -111,6 +111,8 @@ class Reading:
     @cached_property
     def dropped_characters(self) -> Bools:
         """Non-whitespace characters that nothing stands for, shape (characters,)."""
+        if self.spans.exact:
+            return np.zeros(len(self.stretch.points), dtype=np.bool_)
         every = np.ones(len(self.spans.ids), dtype=np.bool_)
         bare = self.stretch.ink & ~self.characters_under(every)
         lacking = self.inventory.lacking
@@ -169,7 +171,7 @@ def word_columns(reading: Reading, alterations: Alterations) -> Columns:
     known = reading.unknown_touches == 0
     altered = np.zeros(len(stretch.words), dtype=np.int64)
     if reading.engine.alters:
-        altered = np.array([alterations.of(word) for word in stretch.word_texts], dtype=np.int64)
+        altered = alterations.of_words(stretch)
     edges = np.searchsorted(stretch.words.starts, stretch.bounds)
     return {
         "pieces": _sums(touches, edges),
@@ -202,7 +204,7 @@ def lossless_column(reading: Reading, lost_space: str) -> Columns:
     engine, texts = reading.engine, reading.stretch.texts
     if not engine.has_decoder:
         return {"lossless_documents": np.zeros(len(texts), dtype=np.int64)}
-    if engine.spells_bytes and _spelled_alike(reading):
+    if engine.spells_bytes and (reading.spans.exact or _spelled_alike(reading)):
         return {"lossless_documents": np.ones(len(texts), dtype=np.int64)}
     flat, bounds = reading.spans.ids.tolist(), reading.spans.bounds.tolist()
     ids = [flat[bounds[i] : bounds[i + 1]] for i in range(len(texts))]

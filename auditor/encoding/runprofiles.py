@@ -2,6 +2,8 @@
 
 from __future__ import annotations
 
+from math import prod
+
 import numpy as np
 
 from auditor.encoding.whole import RunTable
@@ -19,21 +21,26 @@ class RunProfiles:
     def of(self, runs: RunTable, pieces: int) -> Ints:
         """Return the profile of each of ``pieces`` pieces, given the runs in them."""
         rows = np.concatenate((runs.kind_of[:, None], runs.table), axis=1)
-        distinct, inverse = np.unique(rows, axis=0, return_inverse=True)
-        known = [tuple(row) for row in distinct.tolist()]
-        held: list[tuple[int, ...]] = [()] * pieces
-        pairs = zip(runs.document_of.tolist(), inverse.reshape(-1).tolist(), strict=True)
+        known, row_of = _distinct_rows(rows)
+        times = np.bincount(runs.document_of, minlength=pieces)
+        found = np.full(pieces, self._number(()), dtype=np.int64)
+        alone = times[runs.document_of] == 1
+        by_row = np.array([self._number((row,)) for row in known], dtype=np.int64)
+        found[runs.document_of[alone]] = by_row[row_of[alone]]
+        held: dict[int, tuple[int, ...]] = {}
+        pairs = zip(runs.document_of[~alone].tolist(), row_of[~alone].tolist(), strict=True)
         for piece, row in pairs:
-            held[piece] = (*held[piece], row)
-        numbered: dict[tuple[int, ...], int] = {}
-        found = np.empty(pieces, dtype=np.int64)
-        for piece, places in enumerate(held):
-            number = numbered.get(places)
-            if number is None:
-                profile = tuple(sorted(known[place] for place in places))
-                number = numbered[places] = self._numbers.setdefault(profile, len(self._numbers))
-            found[piece] = number
+            held[piece] = (*held.get(piece, ()), row)
+        numbered = {
+            places: self._number(tuple(sorted(known[place] for place in places)))
+            for places in set(held.values())
+        }
+        for piece, places in held.items():
+            found[piece] = numbered[places]
         return found
+
+    def _number(self, profile: tuple[Row, ...]) -> int:
+        return self._numbers.setdefault(profile, len(self._numbers))
 
     def expand(self, profile_of: Ints, document_of: Ints) -> RunTable:
         """Return the runs of pieces, given the profile and the document of each piece."""
@@ -56,6 +63,23 @@ class RunProfiles:
         rows = [row for profile in self._numbers for row in profile]
         width = len(rows[0]) if rows else 9
         return begins, np.array(rows, dtype=np.int64).reshape(-1, width)
+
+
+def _distinct_rows(rows: Ints) -> tuple[list[Row], Ints]:
+    """Return the distinct rows of small counts, and which of them each row is.
+
+    A row is written as one number, its columns as digits; where that takes more than a machine's
+    integer, rows are compared as they are.
+    """
+    digits = [int(top) + 1 for top in rows.max(axis=0, initial=0)]
+    if prod(digits) >= 1 << 62:
+        distinct, row_of = np.unique(rows, axis=0, return_inverse=True)
+        return [tuple(row) for row in distinct.tolist()], row_of.reshape(-1)
+    codes = np.zeros(len(rows), dtype=np.int64)
+    for column, base in zip(rows.T, digits, strict=True):
+        codes = codes * base + column
+    _, firsts, row_of = np.unique(codes, return_index=True, return_inverse=True)
+    return [tuple(row) for row in rows[firsts].tolist()], row_of
 
 
 def _counted(codes: Ints) -> tuple[Ints, Ints]:

@@ -32,19 +32,23 @@ class SpanIndex:
         A token misses a word by starting at or after its end, or by ending at or before its start,
         and never by both.
         """
+        if not len(self.starts):
+            return np.zeros(len(words), dtype=np.int64)
         begun = np.searchsorted(self.starts, words.ends, side="left")
         finished = np.searchsorted(self.ends, words.starts, side="right")
         return (begun - finished).astype(np.int64)
 
 
-def tokens_within(spans: Spans, starts: Ints, ends: Ints) -> Ints:
-    """Return how many non-empty spans lie wholly in each of the disjoint ranges."""
+def tokens_within(spans: Spans, starts: Ints, ends: Ints, chosen: Bools | None = None) -> Ints:
+    """Return how many non-empty spans, of ``chosen`` tokens, lie wholly in each disjoint range."""
     if not len(starts):
         return np.zeros(0, dtype=np.int64)
+    held = spans.ends > spans.starts
+    places = np.flatnonzero(held if chosen is None else held & chosen)
     order = np.argsort(starts, kind="stable")
-    home = np.searchsorted(starts[order], spans.starts, side="right") - 1
-    inside = (home >= 0) & (spans.ends > spans.starts)
-    inside &= spans.ends <= ends[order][np.maximum(home, 0)]
+    home = np.searchsorted(starts[order], spans.starts[places], side="right") - 1
+    inside = home >= 0
+    inside &= spans.ends[places] <= ends[order][np.maximum(home, 0)]
     found = np.empty(len(starts), dtype=np.int64)
     found[order] = np.bincount(home[inside], minlength=len(starts))
     return found

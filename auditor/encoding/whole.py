@@ -94,7 +94,7 @@ class WholeTexts:
         self._inventory = vocabulary.inventory
         self._parse_control = parse_control
         engine = vocabulary.engine
-        self._alterations = Alterations(engine.normalize, alters_ascii=engine.alters_ascii)
+        self._alterations = Alterations(engine.normalize, engine.unaltered)
         self._fates = Fates(vocabulary)
         self._broken = BrokenWords(vocabulary.inventory)
 
@@ -128,8 +128,10 @@ class WholeTexts:
             if found.fate is not None:
                 by_form[place, 2 + FATES.index(found.fate)] = 1
         table = by_form[runs.form_of]
-        # Whitespace and zero-width runs are disjoint, so that one look-up serves both.
-        table[:, 1] = tokens_within(reading.spans, runs.starts, runs.ends)
+        # Whitespace and zero-width runs are disjoint, so that one look-up serves both. A token in
+        # one of whitespace holds no ink; zero-width characters are ink, but rare.
+        blank = None if runs.any_zero_width else ~reading.inked
+        table[:, 1] = tokens_within(reading.spans, runs.starts, runs.ends, blank)
         kind_of = np.array(kinds, dtype=np.int64)[runs.form_of]
         return RunTable(kind_of, table, reading.stretch.document_of(runs.starts))
 

@@ -2,11 +2,14 @@
 
 from __future__ import annotations
 
-import heapq
 from collections.abc import Iterable, Iterator, Sequence
+from itertools import islice
 from typing import Any
 
+import numpy as np
+import numpy.typing as npt
 import pandas as pd
+import pyarrow as pa
 import regex
 
 from auditor.tallies.characters import CharactersTally
@@ -78,10 +81,18 @@ def worst_words(tally: WordsTally) -> list[tuple[BrokenWord, int]]:
 
     A word's cost is its extra tokens, count × (pieces − 1); ties go by the word.
     """
-    costly = heapq.nsmallest(WORST, tally.rows(), key=lambda item: (-_extra(*item), *item[0]))
+    costly = tally.largest(WORST, _costs)
     named = {row for row, _ in costly}
-    lost = (item for item in tally.rows() if item[0].unknown and item[0] not in named)
-    return [*costly, *heapq.nsmallest(WORST, lost, key=lambda item: (-item[1], *item[0]))]
+    lost = (item for item in tally.largest(2 * WORST, _losses) if item[0] not in named)
+    return [*costly, *islice(lost, WORST)]
+
+
+def _costs(rows: pa.Table) -> npt.NDArray[np.int64]:
+    return np.asarray(np.asarray(rows["count"]) * (np.asarray(rows["pieces"]) - 1))
+
+
+def _losses(rows: pa.Table) -> npt.NDArray[np.int64]:
+    return np.where(np.asarray(rows["unknown"]) > 0, np.asarray(rows["count"]), -1)
 
 
 def _extra(row: BrokenWord, count: int) -> int:

@@ -74,9 +74,7 @@ class ContentTallies:
         broken = measured.broken
         times = np.zeros(len(broken.rows), dtype=np.int64)
         np.add.at(times, broken.row_of, weights[broken.document_of])
-        for row, count in zip(broken.rows, times.tolist(), strict=True):
-            if count:
-                self.words.add(row, count)
+        self.words.add_table(broken.rows, times)
         for lost in measured.lost:
             counts = (lost.counts * weights[lost.documents]).tolist()
             sources = contents.sources[lost.documents].tolist()

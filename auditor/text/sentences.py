@@ -9,7 +9,7 @@ import numpy.typing as npt
 from icu4py.breakers import SentenceBreaker
 
 from auditor.text import properties
-from auditor.text.words import LOCALE, utf16_to_points
+from auditor.text.boundaries import LOCALE, utf16_to_points
 
 Ints = npt.NDArray[np.int64]
 

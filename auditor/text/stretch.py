@@ -9,6 +9,7 @@ import numpy as np
 import numpy.typing as npt
 
 from auditor.text import properties
+from auditor.text.slices import utf8_lengths
 from auditor.text.words import Words, find_words
 
 Ints = npt.NDArray[np.int64]
@@ -67,8 +68,7 @@ class Stretch:
     @cached_property
     def utf8_lengths(self) -> Ints:
         """UTF-8 bytes of each character (RFC 3629 section 3), shape (characters,)."""
-        points = self.points
-        return 1 + (points >= 0x80).astype(np.int64) + (points >= 0x800) + (points >= 0x10000)
+        return utf8_lengths(self.points)
 
     @cached_property
     def bytes_before(self) -> Ints:

@@ -10,6 +10,7 @@ import numpy.typing as npt
 import regex
 
 from auditor.text import properties
+from auditor.text.slices import distinct
 from auditor.text.words import runs_of
 
 if TYPE_CHECKING:
@@ -77,6 +78,11 @@ class Runs:
     def __len__(self) -> int:
         return len(self.starts)
 
+    @property
+    def any_zero_width(self) -> bool:
+        """Whether there is a run of zero-width characters."""
+        return any(form.text[0] in properties.ZERO_WIDTH for form in self.forms)
+
 
 def find_runs(stretch: Stretch) -> Runs:
     """Return the maximal runs of whitespace of ``stretch``, then those of zero-width characters."""
@@ -85,21 +91,28 @@ def find_runs(stretch: Stretch) -> Runs:
     starts = np.concatenate([run[0] for run in found])
     ends = np.concatenate([run[1] for run in found])
     places = _positions(stretch, starts, ends)
-    forms: dict[RunForm, int] = {}
-    form_of = np.empty(len(starts), dtype=np.int64)
+    texts, numbers = _texts(stretch, starts, ends)
+    codes = numbers * len(_POSITIONS) + places
+    present = np.flatnonzero(np.bincount(codes))
+    form_of = np.zeros(present[-1] + 1 if len(present) else 0, dtype=np.int64)
+    form_of[present] = np.arange(len(present))
+    pairs = (divmod(code, len(_POSITIONS)) for code in present.tolist())
+    forms = [RunForm(texts[number], _POSITIONS[place]) for number, place in pairs]
+    return Runs(starts, ends, form_of[codes], forms)
+
+
+def _texts(stretch: Stretch, starts: Ints, ends: Ints) -> tuple[list[str], Ints]:
+    """Return the distinct runs, and which of them each run is."""
+    numbers = np.empty(len(starts), dtype=np.int64)
     single = ends - starts == 1
-    codes = stretch.points[starts[single]].astype(np.int64) * 3 + places[single]
-    distinct, inverse = np.unique(codes, return_inverse=True)
-    numbers = [
-        forms.setdefault(RunForm(chr(code // 3), _POSITIONS[code % 3]), len(forms))
-        for code in distinct.tolist()
-    ]
-    form_of[single] = np.array(numbers, dtype=np.int64)[inverse]
-    for run in np.flatnonzero(~single).tolist():
-        text = stretch.joined[starts[run] : ends[run]]
-        form = RunForm(text, _POSITIONS[places[run]])
-        form_of[run] = forms.setdefault(form, len(forms))
-    return Runs(starts, ends, form_of, list(forms))
+    points = stretch.points[starts[single]]
+    present = np.flatnonzero(np.bincount(points))
+    number_of = np.zeros(present[-1] + 1 if len(present) else 0, dtype=np.int64)
+    number_of[present] = np.arange(len(present))
+    numbers[single] = number_of[points]
+    number, longer = distinct(stretch.points, starts[~single], ends[~single])
+    numbers[~single] = number + len(present)
+    return [*map(chr, present.tolist()), *longer], numbers
 
 
 def _positions(stretch: Stretch, starts: Ints, ends: Ints) -> Ints:

@@ -3,24 +3,18 @@
 from __future__ import annotations
 
 from dataclasses import dataclass
-from itertools import chain
 
 import numpy as np
 import numpy.typing as npt
-from icu4py.breakers import CharacterBreaker, WordBreaker
+from icu4py.breakers import CharacterBreaker
 
 from auditor.text import properties
+from auditor.text.boundaries import LOCALE, segment_starts
 
 Ints = npt.NDArray[np.int64]
 Points = npt.NDArray[np.uint32]
 
 RULES = ("icu", "whitespace")
-# The rules that no language tailors; ICU brings the dictionaries of Thai, Lao, Khmer, Burmese,
-# Chinese and Japanese whatever the locale.
-LOCALE = "en"
-# A vertical tab is a boundary on both its sides (UAX #29 WB3a, WB3b) whatever stands beside it, so
-# that one call serves many documents. A line feed would join a carriage return before it.
-_SEPARATOR = "\v"
 
 
 @dataclass(frozen=True, slots=True)
@@ -49,24 +43,8 @@ def find_words(texts: list[str], bounds: Ints, points: Points, *, rule: str) -> 
 
 
 def _segments(texts: list[str], bounds: Ints, points: Points) -> tuple[Ints, Ints]:
-    segments = WordBreaker(_SEPARATOR.join(texts), LOCALE).segments()
-    flat = np.fromiter(chain.from_iterable(segments), dtype=np.int64).reshape(-1, 2)
-    separated = np.insert(points, bounds[1:-1], ord(_SEPARATOR))
-    flat = utf16_to_points(flat, separated)
-    places = bounds[1:-1] + np.arange(len(texts) - 1)
-    document = np.searchsorted(places, flat[:, 0], side="left")
-    kept = ~np.isin(flat[:, 0], places)
-    return (flat[:, 0] - document)[kept], (flat[:, 1] - document)[kept]
-
-
-def utf16_to_points(offsets: Ints, points: Points) -> Ints:
-    """Return UTF-16 offsets, as ICU gives them, as code point offsets into ``points``."""
-    beyond = np.flatnonzero(points > 0xFFFF)
-    if not len(beyond):
-        return offsets
-    # The k-th such character begins at UTF-16 offset beyond[k] + k; each one that begins before
-    # an offset moves it by one.
-    return offsets - np.searchsorted(beyond + np.arange(len(beyond)), offsets, side="left")
+    starts = segment_starts(texts, bounds, points)
+    return starts, np.append(starts[1:], len(points))[: len(starts)]
 
 
 def _runs(texts: list[str], bounds: Ints, points: Points) -> tuple[Ints, Ints]:

@@ -14,14 +14,17 @@ CHARACTER_OF_BYTE: dict[int, str] = {
     **{byte: chr(0x100 + place) for place, byte in enumerate(_MOVED)},
 }
 BYTE_OF_CHARACTER = {character: byte for byte, character in CHARACTER_OF_BYTE.items()}
+# Bytes as the characters of Latin-1; what stands for no byte becomes a character beyond it.
+_AS_LATIN_1: dict[int, int] = dict.fromkeys(range(0x100), 0xFFFF)
+_AS_LATIN_1 |= {ord(character): byte for character, byte in BYTE_OF_CHARACTER.items()}
 SPACE = CHARACTER_OF_BYTE[0x20]
 
 
 def bytes_of(entry: str) -> bytes | None:
     """Return the bytes that ``entry`` stands for, ``None`` when it is no byte-level spelling."""
     try:
-        return bytes(BYTE_OF_CHARACTER[character] for character in entry)
-    except KeyError:
+        return entry.translate(_AS_LATIN_1).encode("latin-1")
+    except UnicodeEncodeError:
         return None
 
 

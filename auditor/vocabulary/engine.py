@@ -18,13 +18,15 @@ class Encoding:
 
     ``ids``, ``starts`` and ``ends`` have shape (tokens,); starts and ends are code points counted
     from the start of the token's own document. Tokens ``bounds[i]`` up to ``bounds[i + 1]`` belong
-    to document ``i``.
+    to document ``i``. ``exact`` says that the bytes of the tokens, in order, are the bytes of the
+    documents, and that each span is every character its token holds a byte of.
     """
 
     ids: Ints
     starts: Ints
     ends: Ints
     bounds: Ints
+    exact: bool = False
 
     def ids_by_document(self) -> list[list[int]]:
         """Return the ids of each document."""
@@ -44,8 +46,11 @@ class Engine(Protocol):
         """Whether there is a normaliser that may alter words."""
 
     @property
-    def alters_ascii(self) -> bool:
-        """Whether a word of ASCII characters alone may be altered."""
+    def unaltered(self) -> Bools | None:
+        """Which characters the normaliser leaves alone whatever stands beside them, by code point.
+
+        ``None`` where that is not known.
+        """
 
     @property
     def spells_bytes(self) -> bool:
@@ -83,6 +88,20 @@ class Inventory:
     lacking: tuple[int, ...]
 
 
+def interleaved(count: int, parts: list[tuple[Ints, Encoding]]) -> Encoding:
+    """Return one encoding of ``count`` documents from those of some, given with their places."""
+    places = np.concatenate([own for own, _ in parts])
+    lengths = np.concatenate([np.diff(part.bounds) for _, part in parts])
+    document = np.repeat(places, lengths)
+    order = np.argsort(document, kind="stable")
+    ids, starts, ends = (
+        np.concatenate([getattr(part, name) for _, part in parts])[order]
+        for name in ("ids", "starts", "ends")
+    )
+    bounds = bounds_of(np.bincount(document, minlength=count))
+    return Encoding(ids, starts, ends, bounds, all(part.exact for _, part in parts))
+
+
 def flags(size: int, ids: list[int]) -> Bools:
     """Return a table of ``size`` booleans, true at ``ids``."""
     found = np.zeros(size, dtype=np.bool_)
@@ -90,7 +109,7 @@ def flags(size: int, ids: list[int]) -> Bools:
     return found
 
 
-def bounds_of(lengths: list[int]) -> Ints:
+def bounds_of(lengths: list[int] | Ints) -> Ints:
     """Return the running sum of ``lengths`` with a leading zero."""
     bounds = np.zeros(len(lengths) + 1, dtype=np.int64)
     np.cumsum(lengths, out=bounds[1:])

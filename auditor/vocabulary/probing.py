@@ -3,6 +3,7 @@
 from __future__ import annotations
 
 from dataclasses import dataclass
+from itertools import chain, islice
 from typing import Literal
 
 import regex
@@ -20,6 +21,7 @@ SpaceConvention = Literal[
     "dropped",
 ]
 
+_LETTER = regex.compile(r"\p{L}")
 _LETTERS = regex.compile(r"\p{L}{2,12}")
 _PAIRS = 40
 # Letters that most vocabularies hold whole, tried in this order; the first that comes back alone.
@@ -87,13 +89,12 @@ def _adds_prefix(engine: Engine, inventory: Inventory, pairs: list[tuple[str, st
 
 def probe_letters(engine: Engine, inventory: Inventory) -> tuple[str, str]:
     """Return two letters that the vocabulary writes and gives back, to set whitespace between."""
-    held = [entry for entry in inventory.entries if entry and regex.fullmatch(r"\p{L}", entry)]
-    candidates = [*_CANDIDATE_LETTERS, *held[:200]]
-    good = [letter for letter in candidates if _comes_back(engine, inventory, letter)]
-    good = list(dict.fromkeys(good))
-    if len(good) >= 2:
-        return good[0], good[1]
-    return (good[0], good[0]) if good else ("a", "b")
+    single = (entry for entry in inventory.entries if entry and len(entry) == 1)
+    held = islice((entry for entry in single if _LETTER.fullmatch(entry)), 200)
+    candidates = dict.fromkeys(chain(_CANDIDATE_LETTERS, held))
+    found = (letter for letter in candidates if _comes_back(engine, inventory, letter))
+    good = list(islice(found, 2)) or ["a", "b"]
+    return good[0], good[-1]
 
 
 def _comes_back(engine: Engine, inventory: Inventory, letter: str) -> bool:

@@ -11,7 +11,7 @@ import tiktoken
 
 from auditor.errors import VocabularyError
 from auditor.vocabulary import bytelevel
-from auditor.vocabulary.engine import Encoding, Inventory, bounds_of, flags
+from auditor.vocabulary.engine import Bools, Encoding, Inventory, bounds_of, flags
 
 
 class RanksEngine:
@@ -22,7 +22,7 @@ class RanksEngine:
 
     has_decoder = True
     alters = False
-    alters_ascii = False
+    unaltered: Bools | None = None
     spells_bytes = True
     overhead = (0, 0)
     family = "ranks"

@@ -10,7 +10,7 @@ import sentencepiece
 from sentencepiece import sentencepiece_model_pb2
 
 from auditor.errors import VocabularyError
-from auditor.vocabulary.engine import Encoding, Ints, Inventory, bounds_of, flags
+from auditor.vocabulary.engine import Bools, Encoding, Ints, Inventory, bounds_of, flags
 
 METASPACE = "\u2581"
 _BYTE_PIECE = regex.compile(r"<0x[0-9A-F]{2}>")
@@ -26,6 +26,8 @@ class SentencePieceEngine:
 
     has_decoder = True
     spells_bytes = False
+    # The character map is not looked into.
+    unaltered: Bools | None = None
     overhead = (0, 0)
 
     def __init__(self, model: bytes, *, where: str) -> None:
@@ -57,11 +59,6 @@ class SentencePieceEngine:
     def alters(self) -> bool:
         """Whether the model holds a character map."""
         return bool(self.proto.normalizer_spec.precompiled_charsmap)
-
-    @property
-    def alters_ascii(self) -> bool:
-        """Whether the character map may hold ASCII characters: it is not looked into."""
-        return self.alters
 
     def encode(self, texts: list[str]) -> Encoding:
         """Return the tokens of ``texts``."""

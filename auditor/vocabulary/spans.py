@@ -15,14 +15,15 @@ class Spans:
     """Tokens of a stretch with their corrected spans.
 
     ``ids``, ``starts`` and ``ends`` have shape (tokens,); positions count from the start of the
-    stretch, and an empty span has ``starts == ends``. ``bounds`` delimits documents as in
-    ``Encoding``.
+    stretch, and an empty span has ``starts == ends``. ``bounds`` and ``exact`` are as in
+    ``Encoding``; spans that are exact and were not corrected leave no character uncovered.
     """
 
     ids: Ints
     starts: Ints
     ends: Ints
     bounds: Ints
+    exact: bool = False
 
 
 def correct(encoding: Encoding, stretch: Stretch, inventory: Inventory) -> Spans:
@@ -34,6 +35,11 @@ def correct(encoding: Encoding, stretch: Stretch, inventory: Inventory) -> Spans
     """
     token_counts = np.diff(encoding.bounds)
     shift = np.repeat(stretch.bounds[:-1], token_counts)
+    if encoding.exact:
+        starts, ends = encoding.starts + shift, encoding.ends + shift
+        marks = np.flatnonzero(inventory.marker_only[encoding.ids])
+        if _holds_whitespace(stretch, starts[marks], ends[marks]).all():
+            return Spans(encoding.ids, starts, ends, encoding.bounds, exact=True)
     limit = np.repeat(stretch.bounds[1:], token_counts)
     starts = encoding.starts + shift
     ends = np.where(encoding.starts == encoding.ends, starts + 1, encoding.ends + shift)

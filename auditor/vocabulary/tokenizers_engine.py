@@ -2,6 +2,7 @@
 
 from __future__ import annotations
 
+from functools import cached_property
 from itertools import chain
 from typing import Any
 
@@ -11,10 +12,25 @@ import regex
 from tokenizers import Tokenizer
 
 from auditor.errors import VocabularyError
+from auditor.text import properties
 from auditor.vocabulary import bytelevel
-from auditor.vocabulary.engine import Encoding, Inventory, bounds_of, flags
+from auditor.vocabulary.engine import (
+    Bools,
+    Encoding,
+    Ints,
+    Inventory,
+    bounds_of,
+    flags,
+    interleaved,
+)
+from auditor.vocabulary.spelling import Spelling
 
 METASPACE = "\u2581"
+# Characters that Unicode's composed form leaves as they are, whatever stands beside them (UAX #15,
+# section 9): what is settled of an assigned character stays so in later versions.
+_COMPOSED = r"(?V1)[\p{NFC_QC=Y}&&\p{ccc=0}&&\P{Cn}]"
+_ASCII = r"\p{ASCII}"
+_SPLITTERS = frozenset({"ByteLevel", "Split", "Digits", "Punctuation"})
 _BYTE_PIECE = regex.compile(r"<0x[0-9A-F]{2}>")
 
 
@@ -59,18 +75,85 @@ class TokenizersEngine:
         return self._normalizer is not None
 
     @property
-    def alters_ascii(self) -> bool:
-        """Whether the normaliser is more than one of Unicode's forms, which leave ASCII alone."""
-        steps = {step["type"] for step in steps_of(self.description, "normalizer")}
-        return self.alters and not steps <= {"NFC", "NFD", "NFKC", "NFKD", "ByteLevel"}
-
-    @property
     def spells_bytes(self) -> bool:
         """Whether the decoder is the byte-level one alone."""
         return [step["type"] for step in steps_of(self.description, "decoder")] == ["ByteLevel"]
 
     def encode(self, texts: list[str]) -> Encoding:
-        """Return the tokens of ``texts``."""
+        """Return the tokens of ``texts``.
+
+        Where tokens spell a text that no normaliser alters, byte by byte, spans follow from that;
+        else the library is asked for them, which costs it as much again as the tokens.
+        """
+        chosen = self._may_be_spelled(texts)
+        if not chosen.any():
+            return self.encode_with_offsets(texts)
+        likely = _picked(texts, chosen)
+        ids, bounds = self._tokens(likely)
+        spelled = self._spelling.spells(ids, bounds, likely)
+        if not spelled.all():
+            lengths = np.diff(bounds)
+            ids, bounds = ids[np.repeat(spelled, lengths)], bounds_of(lengths[spelled])
+            chosen[chosen] = spelled
+        found = self._spelling.encoding(ids, bounds, _picked(texts, chosen))
+        if chosen.all():
+            return found
+        others = self.encode_with_offsets(_picked(texts, ~chosen))
+        parts = [(np.flatnonzero(chosen), found), (np.flatnonzero(~chosen), others)]
+        return interleaved(len(texts), parts)
+
+    def _tokens(self, texts: list[str]) -> tuple[Ints, Ints]:
+        """Return the ids of ``texts`` end to end, and the bounds of each text among them."""
+        found = [
+            encoding.ids
+            for encoding in self._library.encode_batch_fast(texts, add_special_tokens=False)
+        ]
+        bounds = bounds_of([len(ids) for ids in found])
+        return np.fromiter(chain.from_iterable(found), np.int64, int(bounds[-1])), bounds
+
+    def _may_be_spelled(self, texts: list[str]) -> Bools:
+        """Return which texts the normaliser leaves alone, none where tokens never spell."""
+        unaltered = self.unaltered
+        if unaltered is None or not self._splits_bytes:
+            return np.zeros(len(texts), dtype=np.bool_)
+        joined = "".join(texts)
+        if joined.isascii():
+            return np.ones(len(texts), dtype=np.bool_)
+        altered = ~unaltered[np.frombuffer(joined.encode("utf-32-le"), dtype=np.uint32)]
+        bounds = bounds_of([len(text) for text in texts])
+        before = np.concatenate(([0], np.cumsum(altered)))[bounds]
+        return np.asarray(before[1:] == before[:-1])
+
+    @cached_property
+    def unaltered(self) -> Bools | None:
+        """Which characters the normaliser leaves alone, whatever stands beside them."""
+        steps = {step["type"] for step in steps_of(self.description, "normalizer")} - {"ByteLevel"}
+        if not steps:
+            return np.ones(properties.CODE_POINTS, dtype=np.bool_)
+        if not steps <= {"NFC", "NFD", "NFKC", "NFKD"}:
+            return None
+        return properties.table(_COMPOSED if steps == {"NFC"} else _ASCII)
+
+    @cached_property
+    def _splits_bytes(self) -> bool:
+        """Whether nothing but bytes, patterns and merges decides on the tokens."""
+        model = self.description["model"]
+        splitters = steps_of(self.description, "pre_tokenizer")
+        return (
+            self._is_byte_level()
+            and model["type"] == "BPE"
+            and all(model.get(name) is None for name in ("unk_token", "dropout"))
+            and not any(model.get(n) for n in ("continuing_subword_prefix", "end_of_word_suffix"))
+            and all(step["type"] in _SPLITTERS for step in splitters)
+            and not any(s.get("add_prefix_space") for s in splitters if s["type"] == "ByteLevel")
+        )
+
+    @cached_property
+    def _spelling(self) -> Spelling:
+        return Spelling.of(self._inventory.entry_bytes or [])
+
+    def encode_with_offsets(self, texts: list[str]) -> Encoding:
+        """Return the tokens of ``texts`` with the spans that the library reports."""
         found = self._library.encode_batch(texts, add_special_tokens=False)
         bounds = bounds_of([len(encoding) for encoding in found])
         count = int(bounds[-1])
@@ -89,6 +172,10 @@ class TokenizersEngine:
 
     def inventory(self) -> Inventory:
         """Return the entries as tables by id."""
+        return self._inventory
+
+    @cached_property
+    def _inventory(self) -> Inventory:
         by_entry: dict[str, int] = self._library.get_vocab(with_added_tokens=True)
         size = max(by_entry.values(), default=-1) + 1
         entries: list[str | None] = [None] * size
@@ -144,6 +231,12 @@ class TokenizersEngine:
             unknown = model.get("unk_id")
             return None if unknown is None else int(unknown)
         return by_entry.get(model.get("unk_token") or "")
+
+
+def _picked(texts: list[str], chosen: Bools) -> list[str]:
+    if chosen.all():
+        return texts
+    return [texts[place] for place in np.flatnonzero(chosen).tolist()]
 
 
 def steps_of(description: dict[str, Any], part: str) -> list[dict[str, Any]]:

@@ -13,6 +13,8 @@ from auditor.encoding.alterations import (
     Alterations,
     judge,
 )
+from auditor.text.stretch import Stretch
+from auditor.vocabulary.tokenizers_engine import TokenizersEngine
 from tests.unit.small_vocabularies import measured, wordpiece
 
 
@@ -83,3 +85,23 @@ def test_both_kinds_in_one_document(tmp_path):
     vocabulary = wordpiece(tmp_path, ["[UNK]", "the", "cafe", "buoy"])
     found = measured(vocabulary, ["The café BUOY buoy"])
     assert (found["case_folded_words"], found["changed_words"]) == ([2], [1])
+
+
+@pytest.mark.parametrize("form", ["NFC", "NFD", "NFKC", "Lowercase"])
+@given(texts=st.lists(st.text("aBé ÉßK\u0301\u0338.ﬁ中\u212a", max_size=12), max_size=5))
+def test_words_of_a_stretch_are_judged_like_single_ones(form, texts):
+    """Words of characters that the normaliser leaves alone are not shown to it, others are."""
+    model = {"type": "BPE", "vocab": {"a": 0}, "merges": []}
+    description = {"normalizer": {"type": form}, "model": model, "version": "1.0"}
+    engine = TokenizersEngine(description, control_strings="parse", where="test")
+    shown = []
+
+    def normalize(word):
+        shown.append(word)
+        return engine.normalize(word)
+
+    stretch = Stretch(texts)
+    found = Alterations(normalize, engine.unaltered).of_words(stretch)
+    expected = [judge(word, engine.normalize(word)) for word in stretch.word_texts]
+    assert found.tolist() == expected
+    assert form == "Lowercase" or not any(word.isascii() for word in shown)

@@ -77,6 +77,17 @@ def test_tokens_within_ranges_agree_with_a_loop(drawn, gaps, random):
     assert found.tolist() == expected
 
 
+@given(SPANS, RANGES, st.integers(0, 2**25))
+def test_chosen_tokens_within_ranges_are_counted(drawn, gaps, bits):
+    """With a choice of tokens the others are as if they were not there."""
+    spans, ranges = as_ends(drawn), laid_out(gaps)
+    chosen = np.array([bits >> place & 1 for place in range(len(spans))], dtype=np.bool_)
+    flat = np.array(ranges, dtype=np.int64).reshape(-1, 2)
+    found = tokens_within(spans_of(spans), flat[:, 0], flat[:, 1], chosen)
+    kept = [span for span, choice in zip(spans, chosen, strict=True) if choice]
+    assert found.tolist() == [sum(low <= s < e <= high for s, e in kept) for low, high in ranges]
+
+
 def test_a_token_over_two_words_touches_both():
     """By hand: one span over "a b" touches "a" and "b"."""
     found = SpanIndex.of(spans_of([(0, 3)])).touching(words_of([(0, 1), (2, 3)]))

@@ -10,8 +10,9 @@ from hypothesis import strategies as st
 from icu4py.breakers import WordBreaker
 
 from auditor.text import properties
+from auditor.text.boundaries import LOCALE, utf16_to_points
 from auditor.text.stretch import Stretch
-from auditor.text.words import LOCALE, count_graphemes, utf16_to_points
+from auditor.text.words import count_graphemes
 
 # UAX #29, section 4 ("Word Boundaries"), figure 1.
 QUICK = "The quick (“brown”) fox can’t jump 32.3 feet, right?"

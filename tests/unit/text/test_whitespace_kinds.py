@@ -104,3 +104,31 @@ def test_runs_are_maximal_and_all_are_found(texts):
         for match in regex.finditer(pattern, text)
     ]
     assert found == sorted(expected)
+
+
+PIECES = st.lists(
+    st.sampled_from([*"ab \n\t\r", "\r\n", "\u00a0", "\u3000", "\u200b", "\ufeff", "🌊", "   "]),
+    max_size=12,
+).map("".join)
+
+
+@given(st.lists(PIECES, max_size=6))
+def test_runs_are_those_of_a_search(texts):
+    """Against `regex`, document by document: place, characters and position of every run."""
+    runs = find_runs(Stretch(texts))
+    forms = [runs.forms[number] for number in runs.form_of.tolist()]
+    found = [
+        (start, end, form.text, form.position)
+        for start, end, form in zip(runs.starts.tolist(), runs.ends.tolist(), forms, strict=True)
+    ]
+    expected, begin = [], 0
+    for pattern in (r"\p{White_Space}+", "[\u200b\u200c\u200d\u2060\ufeff]+"):
+        begin = 0
+        for text in texts:
+            for match in regex.finditer(pattern, text):
+                place = "end" if match.end() == len(text) else "middle"
+                place = "start" if match.start() == 0 else place
+                expected.append((begin + match.start(), begin + match.end(), match.group(), place))
+            begin += len(text)
+    assert found == expected
+    assert len(set(runs.forms)) == len(runs.forms)

@@ -52,6 +52,13 @@ def test_a_character_outside_the_table_is_no_spelling():
     assert bytes_of("a b") is None
 
 
+def test_no_other_character_is_a_spelling():
+    """Every code point against the table itself."""
+    known = {character: bytes([byte]) for byte, character in CHARACTER_OF_BYTE.items()}
+    for point in range(0x110000):
+        assert bytes_of(chr(point)) == known.get(chr(point)), hex(point)
+
+
 def test_128_single_bytes_are_no_text(tmp_path):
     """RFC 3629, section 3: only 0x00-7F stand alone, whatever the vocabulary."""
     inventory = byte_level(tmp_path, []).inventory
