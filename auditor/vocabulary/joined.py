@@ -6,12 +6,13 @@ import re
 
 import numpy as np
 
-from auditor.text import properties
+from auditor.vocabulary import adjoining
 from auditor.vocabulary.engine import Bools, Encoding, Engine, Ints, bounds_of
-from auditor.vocabulary.separation import WHITESPACE_AFTER_WORDS, Separation
+from auditor.vocabulary.separation import Separation
 
-# Stands between two parts, so that one place is a cut before it and one after it.
-_FENCE = " a"
+# One stands between two parts, so that one place is a cut before it and one after it: the second
+# serves parts that begin with a letter.
+_FENCES = (" a", " a\n")
 _TOGETHER = 512
 _WORTH_IT = 64
 
@@ -20,18 +21,15 @@ class JoinedParts:
     """An engine for later parts of documents (see ``Separation``) that gives what it would give.
 
     Parts are laid end to end with a fence between them: before the fence there is a cut by the last
-    character of a part, after it one by the first of the next. Parts for which that is not so go
-    one by one, and so do all when a string that is an added token comes about.
+    character of a part, after it one by the first two of the next. Parts are laid with others that
+    the same fence serves; those that none serves go one by one, and so do all when a string that is
+    an added token comes about.
     """
 
     def __init__(self, separation: Separation) -> None:
         self._engine: Engine = separation.later
-        self._ends = ~separation.closed | separation.open_words[" "]
-        fence = ord(_FENCE[-1])
-        opens = [m for m in WHITESPACE_AFTER_WORDS if separation.open_words[m][fence]]
-        self._starts = np.zeros(properties.CODE_POINTS, dtype=np.bool_)
-        self._starts[[ord(mark) for mark in opens]] = True
-        self._before_letters = not separation.closed[fence]
+        self._classes = separation.classes
+        self._asked = separation.asked
         contents = separation.whole_for
         self._added = re.compile("|".join(map(re.escape, contents))) if contents else None
         self.has_decoder = self._engine.has_decoder
@@ -43,14 +41,20 @@ class JoinedParts:
         """Return the tokens of ``texts``."""
         if len(texts) < _WORTH_IT:
             return self._engine.encode(texts)
-        joinable = np.flatnonzero(self._joinable(texts)).tolist()
-        groups = [joinable[i : i + _TOGETHER] for i in range(0, len(joinable), _TOGETHER)]
-        strings = [_FENCE.join([texts[place] for place in group]) for group in groups]
+        fence_of = self._fences(texts)
+        groups: list[list[int]] = []
+        strings: list[str] = []
+        for number, fence in enumerate(_FENCES):
+            joinable = np.flatnonzero(fence_of == number).tolist()
+            own = [joinable[i : i + _TOGETHER] for i in range(0, len(joinable), _TOGETHER)]
+            groups += own
+            strings += [fence.join([texts[place] for place in group]) for group in own]
         if self._added is not None and any(self._added.search(string) for string in strings):
             return self._engine.encode(texts)
-        alone = np.setdiff1d(np.arange(len(texts)), joinable).tolist()
+        alone = np.flatnonzero(fence_of == len(_FENCES)).tolist()
         encoded = self._engine.encode([*strings, *(texts[place] for place in alone)])
-        return _taken_apart(encoded, texts, [*groups, *([place] for place in alone)])
+        widths = np.array([*map(len, _FENCES), 0], dtype=np.int64)[fence_of]
+        return _taken_apart(encoded, texts, [*groups, *([place] for place in alone)], widths)
 
     def decode(self, ids: list[list[int]]) -> list[str]:
         """Return the texts that ``ids`` stand for."""
@@ -60,25 +64,40 @@ class JoinedParts:
         """Return what the normaliser makes of ``word``."""
         return self._engine.normalize(word)
 
-    def _joinable(self, texts: list[str]) -> Bools:
-        """Return which texts have a cut before a fence, and after one, shape (texts,)."""
-        letters = properties.table(properties.WORD_CHARACTER)
-        firsts, seconds, lasts = (
-            np.array([ord(text[place]) if len(text) > 1 else 0 for text in texts])
-            for place in (0, 1, -1)
+    def _fences(self, texts: list[str]) -> Ints:
+        """Return the first fence that serves each text, or their number for none."""
+        # A text of one character is followed by a fence, which begins with a space.
+        first, second, last = (
+            np.array([ord((text + " ")[place]) for text in texts]) for place in (0, 1, -2)
         )
-        before_letter = (firsts == ord(" ")) & letters[seconds] & self._before_letters
-        return np.asarray(self._ends[lasts] & (self._starts[firsts] | before_letter))
+        found = np.full(len(texts), len(_FENCES), dtype=np.int64)
+        space, letter = (np.full(len(texts), ord(character)) for character in _FENCES[0])
+        closed = self._is_cut(last, space, letter)
+        for number, fence in reversed(list(enumerate(_FENCES))):
+            end = np.full(len(texts), ord(fence[-1]))
+            found[closed & self._is_cut(end, first, second)] = number
+        return found
+
+    def _is_cut(self, before: Ints, after: Ints, next_one: Ints) -> Bools:
+        """Return whether a cut stands between two characters; a line end is taken to be alone."""
+        asked = self._asked[self._classes[before], self._classes[after]]
+        answers = adjoining.followers()[next_one] | (adjoining.OPEN | adjoining.LONE)
+        return np.asarray((asked > 0) & ((asked & ~answers) == 0))
 
 
-def _taken_apart(encoded: Encoding, texts: list[str], groups: list[list[int]]) -> Encoding:
-    """Return the tokens of each text from those of groups laid end to end with fences."""
+def _taken_apart(
+    encoded: Encoding, texts: list[str], groups: list[list[int]], fences: Ints
+) -> Encoding:
+    """Return the tokens of each text from those of groups laid end to end.
+
+    ``fences`` (texts,) are the widths of the fences between the texts of a group.
+    """
     order = np.array([place for group in groups for place in group], dtype=np.int64)
     lengths = np.array([len(text) for text in texts], dtype=np.int64)[order]
     last = np.zeros(len(order), dtype=np.bool_)
     last[np.cumsum([len(group) for group in groups]) - 1] = True
     # Texts and fences take turns; the last text of a group has a fence of no length after it.
-    widths = np.stack((lengths, np.where(last, 0, len(_FENCE))), axis=1).reshape(-1)
+    widths = np.stack((lengths, np.where(last, 0, fences[order])), axis=1).reshape(-1)
     begins = bounds_of(widths.tolist())
     ends_of_groups = begins[2 * np.flatnonzero(last) + 2]
     shift = np.repeat(np.concatenate(([0], ends_of_groups[:-1])), np.diff(encoded.bounds))
