@@ -8,12 +8,15 @@ import numpy as np
 import numpy.typing as npt
 import pyarrow as pa
 
-from auditor.text import properties
 from auditor.text.stretch import Stretch
-from auditor.vocabulary.engine import Bools, Ints
-from auditor.vocabulary.separation import WHITESPACE_AFTER_WORDS, Separation
+from auditor.vocabulary import adjoining
+from auditor.vocabulary.engine import Ints
+from auditor.vocabulary.separation import Separation, in_common
 
-_SPACE = 0x20
+Asked = npt.NDArray[np.uint8]
+
+# Characters looked up at once, so that tables and results stay in the cache.
+_BLOCK = 1 << 16
 # A key of the ledger: one of these for where in its document a piece stands, then its text.
 INNER, LAST, FIRST, ONLY = range(4)
 
@@ -34,44 +37,39 @@ class Cut:
     firsts: Ints
 
 
-@dataclass(frozen=True, slots=True)
 class Places:
-    """Where cuts are allowed: what all vocabularies of a run allow (see ``Separation``)."""
+    """Where cuts are made: where each of ``separations`` allows one."""
 
-    closed: Bools
-    open_words: dict[str, Bools]
-
-    @classmethod
-    def common(cls, separations: list[Separation]) -> Places:
-        """Return the places that every one of ``separations`` allows."""
-        closed = np.logical_or.reduce([s.closed for s in separations])
-        words = {
-            mark: np.logical_and.reduce([s.open_words[mark] for s in separations])
-            for mark in WHITESPACE_AFTER_WORDS
-        }
-        return cls(closed, words)
+    def __init__(self, separations: list[Separation]) -> None:
+        self._classes, asked = in_common(separations)
+        self._asked = asked.reshape(-1).astype(np.uint8)
 
     def within(self, stretch: Stretch) -> Ints:
         """Return the positions inside documents before which a cut stands, in rising order."""
         points = stretch.points
-        inner = points[1:]
-        found = [
-            self._after_words(points, mark, np.flatnonzero(inner == ord(mark)) + 1)
-            for mark in WHITESPACE_AFTER_WORDS
-        ]
-        spaces = np.flatnonzero(inner[:-1] == _SPACE) + 1
-        found.append(self._before_space(stretch, spaces))
-        places = np.unique(np.concatenate(found))
-        return places[places > stretch.bounds[stretch.document_of(places)]]
+        edge = np.zeros(len(points) + 1, dtype=np.bool_)
+        edge[stretch.bounds] = True
+        places, asked = self._candidates(points)
+        inside = ~edge[places]
+        places, asked = places[inside], asked[inside]
+        answers = adjoining.followers()[points[np.minimum(places + 1, len(points) - 1)]]
+        answers[edge[places + 1]] = adjoining.END
+        # A line end is alone when nothing, or no whitespace, stands before it in its document.
+        alone = edge[places - 1] | ~stretch.whitespace[np.maximum(places - 2, 0)]
+        answers[alone] |= adjoining.LONE
+        return np.asarray(places[(asked & ~(answers | adjoining.OPEN)) == 0])
 
-    def _after_words(self, points: npt.NDArray[np.uint32], mark: str, places: Ints) -> Ints:
-        return places[self.open_words[mark][points[places - 1]]]
-
-    def _before_space(self, stretch: Stretch, places: Ints) -> Ints:
-        points = stretch.points
-        letters = properties.table(properties.WORD_CHARACTER)
-        places = places[~self.closed[points[places - 1]] & letters[points[places + 1]]]
-        return places[places + 1 < stretch.bounds[stretch.document_of(places) + 1]]
+    def _candidates(self, points: npt.NDArray[np.uint32]) -> tuple[Ints, Asked]:
+        """Return the places between two classes that are ever cut, and what is asked there."""
+        places, asked = [], []
+        for begin in range(0, len(points), _BLOCK):
+            found = self._classes[points[begin : begin + _BLOCK + 1]].astype(np.uint16)
+            codes = found[:-1] * adjoining.CLASSES + found[1:]
+            own = np.take(self._asked, codes)
+            held = np.flatnonzero(own)
+            places.append(held + (begin + 1))
+            asked.append(own[held])
+        return np.concatenate(places), np.concatenate(asked)
 
 
 def cut(stretch: Stretch, places: Places) -> Cut:

@@ -88,7 +88,7 @@ class Documents:
             for v, s in zip(vocabularies, self._separations, strict=True)
         ]
         held = [s for s in self._separations if s is not None]
-        self._places = Places.common(held) if held else None
+        self._places = Places(held) if held else None
         self._added = _AddedContents(sorted({c for s in held for c in s.whole_for}))
         self._ledger = Ledger(len(self._cut), self._measure_pieces, self._sink_pieces)
 

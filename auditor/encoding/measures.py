@@ -195,11 +195,11 @@ def character_columns(reading: Reading) -> Columns:
     }
 
 
-def lossless_column(reading: Reading, lost_space: str) -> Columns:
+def lossless_column(reading: Reading, anchor: tuple[int, ...]) -> Columns:
     """Return the column of texts that come back exactly; all 0 without a decoder.
 
-    ``lost_space`` is what decoding leaves out at the start of a text that begins with a space and
-    has a token.
+    Texts that do not begin a document are decoded behind the tokens ``anchor``: decoders treat the
+    first token otherwise than later ones.
     """
     engine, texts = reading.engine, reading.stretch.texts
     if not engine.has_decoder:
@@ -207,11 +207,9 @@ def lossless_column(reading: Reading, lost_space: str) -> Columns:
     if engine.spells_bytes and (reading.spans.exact or _spelled_alike(reading)):
         return {"lossless_documents": np.ones(len(texts), dtype=np.int64)}
     flat, bounds = reading.spans.ids.tolist(), reading.spans.bounds.tolist()
-    ids = [flat[bounds[i] : bounds[i + 1]] for i in range(len(texts))]
-    same = [
-        text == (lost_space + back if text[:1] == " " and own else back)
-        for text, own, back in zip(texts, ids, engine.decode(ids), strict=True)
-    ]
+    ids = [[*anchor, *flat[bounds[i] : bounds[i + 1]]] for i in range(len(texts))]
+    before = engine.decode([list(anchor)])[0] if anchor else ""
+    same = [before + text == back for text, back in zip(texts, engine.decode(ids), strict=True)]
     return {"lossless_documents": np.array(same, dtype=np.int64)}
 
 

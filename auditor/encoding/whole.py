@@ -83,14 +83,14 @@ class WholeTexts:
     """Measures texts under one vocabulary, each encoded whole.
 
     ``separation`` is given for texts that are later parts of documents: it names the engine for
-    them, and what decoding leaves out at their start.
+    them, and the tokens that stand before theirs when they are decoded.
     """
 
     def __init__(
         self, vocabulary: Vocabulary, *, parse_control: bool, separation: Separation | None = None
     ) -> None:
         self._engine: Engine = JoinedParts(separation) if separation else vocabulary.engine
-        self._lost_space = separation.lost_space if separation else ""
+        self._anchor = separation.anchor if separation else ()
         self._inventory = vocabulary.inventory
         self._parse_control = parse_control
         engine = vocabulary.engine
@@ -107,7 +107,7 @@ class WholeTexts:
             **token_columns(reading),
             **word_columns(reading, self._alterations),
             **character_columns(reading),
-            **lossless_column(reading, self._lost_space),
+            **lossless_column(reading, self._anchor),
         }
         return Measured(
             columns,

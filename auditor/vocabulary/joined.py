@@ -7,12 +7,17 @@ from dataclasses import dataclass
 
 import numpy as np
 
-from auditor.text import properties
+from auditor.vocabulary import adjoining
 from auditor.vocabulary.engine import Bools, Encoding, Engine, Ints, bounds_of
-from auditor.vocabulary.separation import WHITESPACE_AFTER_WORDS, Separation
+from auditor.vocabulary.separation import Separation
 
-# Stands between two parts, so that one place is a cut before it and one after it.
-_FENCE = " a"
+# A fence stands between two parts that are no cut of themselves: its beginning makes a cut after
+# the one, its end a cut before the other. The first of each that serves is taken.
+_BEGINS = (" a", "aa")
+_ENDS = ("", "\n")
+_FENCES = tuple(begin + end for begin in _BEGINS for end in _ENDS)
+_NONE = len(_FENCES)
+_WIDTHS = np.array([*map(len, _FENCES), 0], dtype=np.int64)
 _TOGETHER = 512
 _WORTH_IT = 64
 
@@ -22,14 +27,14 @@ class JoinedParts:
 
     Parts are laid end to end. Where the last character of a part and the first of the next are no
     cut, a fence stands between them: before it there is a cut by the part before, after it one by
-    the part after. Parts for which that is not so go one by one, and so do all when a string that
-    is an added token comes about.
+    the part after. Parts that no fence serves go one by one, and so do all when a string that is an
+    added token comes about.
     """
 
     def __init__(self, separation: Separation) -> None:
         self._engine: Engine = separation.later
-        self._closed = separation.closed
-        self._open_words = separation.open_words
+        self._classes = separation.classes
+        self._asked = separation.asked
         contents = separation.whole_for
         self._added = re.compile("|".join(map(re.escape, contents))) if contents else None
         self.has_decoder = self._engine.has_decoder
@@ -42,10 +47,12 @@ class JoinedParts:
         if len(texts) < _WORTH_IT:
             return self._engine.encode(texts)
         edges = _Edges.of(texts)
-        joinable = self._joinable(edges)
+        begin, end = self._begins(edges), self._ends(edges)
+        joinable = (begin < len(_BEGINS)) & (end < len(_ENDS))
         places = np.flatnonzero(joinable)
-        apart = self._cuts(edges.lasts[places[:-1]], edges.at(places[1:]))
-        groups = _Groups(places, np.where(apart, 0, len(_FENCE)))
+        apart = self._is_cut(edges.lasts[places[:-1]], edges.at(places[1:]))
+        fences = np.where(apart, _NONE, begin[places[:-1]] * len(_ENDS) + end[places[1:]])
+        groups = _Groups(places, fences)
         strings = groups.strings(texts)
         if self._added is not None and any(self._added.search(string) for string in strings):
             return self._engine.encode(texts)
@@ -61,21 +68,32 @@ class JoinedParts:
         """Return what the normaliser makes of ``word``."""
         return self._engine.normalize(word)
 
-    def _joinable(self, edges: _Edges) -> Bools:
-        """Return which parts have a cut before a fence, and after one, shape (parts,)."""
-        letter = np.full(len(edges.lasts), ord(_FENCE[-1]))
-        fence = _Edges(np.full_like(letter, ord(_FENCE[0])), letter, letter)
-        long_enough = edges.seconds >= 0
-        return long_enough & self._cuts(edges.lasts, fence) & self._cuts(letter, edges)
+    def _begins(self, edges: _Edges) -> Ints:
+        """Return which beginning of a fence makes a cut after each part, their number for none."""
+        found = np.full(len(edges.lasts), len(_BEGINS), dtype=np.int64)
+        for number, begin in reversed(list(enumerate(_BEGINS))):
+            fence = _Edges.like(edges.lasts, begin)
+            found[self._is_cut(edges.lasts, fence)] = number
+        return found
 
-    def _cuts(self, lasts: Ints, nexts: _Edges) -> Bools:
-        """Return whether there is a cut after characters ``lasts`` and before parts ``nexts``."""
-        letters = properties.table(properties.WORD_CHARACTER)
-        spaced = (nexts.firsts == ord(" ")) & letters[np.maximum(nexts.seconds, 0)]
-        found = spaced & (nexts.seconds >= 0) & ~self._closed[lasts]
-        for mark in WHITESPACE_AFTER_WORDS:
-            found |= (nexts.firsts == ord(mark)) & self._open_words[mark][lasts]
-        return np.asarray(found)
+    def _ends(self, edges: _Edges) -> Ints:
+        """Return which end of a fence makes a cut before each part, their number for none."""
+        found = np.full(len(edges.lasts), len(_ENDS), dtype=np.int64)
+        for number, end in reversed(list(enumerate(_ENDS))):
+            before = np.full_like(edges.lasts, ord((_BEGINS[0] + end)[-1]))
+            # The line end of a fence stands after a letter.
+            found[self._is_cut(before, edges, lone=True)] = number
+        return found
+
+    def _is_cut(self, before: Ints, after: _Edges, *, lone: bool = False) -> Bools:
+        """Return whether a cut stands after characters ``before`` and before parts ``after``."""
+        asked = self._asked[self._classes[before], self._classes[after.firsts]]
+        answers = adjoining.followers()[np.maximum(after.seconds, 0)]
+        # No part begins with a character that joins, so that what follows one of a single
+        # character is plain.
+        answers = np.where(after.seconds < 0, adjoining.PLAIN, answers) | adjoining.OPEN
+        answers = answers | (adjoining.LONE if lone else 0)
+        return np.asarray((asked > 0) & ((asked & ~answers) == 0))
 
 
 @dataclass(frozen=True, slots=True)
@@ -99,24 +117,31 @@ class _Edges:
             points[np.maximum(ends, 1) - 1],
         )
 
+    @classmethod
+    def like(cls, parts: Ints, text: str) -> _Edges:
+        """Return the edges of ``text``, as many times as there are ``parts``."""
+        first, second, last = (np.full_like(parts, ord(text[place])) for place in (0, 1, -1))
+        return cls(first, second, last)
+
     def at(self, places: Ints) -> _Edges:
         return _Edges(self.firsts[places], self.seconds[places], self.lasts[places])
 
 
 class _Groups:
-    """Parts at ``places`` laid end to end, ``gaps`` (parts - 1,) being the fences' lengths."""
+    """Parts at ``places`` laid end to end, ``fences`` (parts - 1,) between them by number."""
 
-    def __init__(self, places: Ints, gaps: Ints) -> None:
+    def __init__(self, places: Ints, fences: Ints) -> None:
         self.places = places
         self.begins = np.arange(0, len(places), _TOGETHER)
-        self.gaps = np.append(gaps, 0)[: len(places)]
-        self.gaps[self.begins[1:] - 1] = 0
+        self.fences = np.append(fences, _NONE)[: len(places)]
+        self.fences[self.begins[1:] - 1] = _NONE
 
     def strings(self, texts: list[str]) -> list[str]:
         """Return the string of each group."""
+        spelled = (*_FENCES, "")
         parts = [
-            texts[place] + _FENCE if gap else texts[place]
-            for place, gap in zip(self.places.tolist(), self.gaps.tolist(), strict=True)
+            texts[place] + spelled[fence]
+            for place, fence in zip(self.places.tolist(), self.fences.tolist(), strict=True)
         ]
         return ["".join(parts[i : i + _TOGETHER]) for i in self.begins.tolist()]
 
@@ -126,7 +151,7 @@ def _taken_apart(encoded: Encoding, texts: list[str], groups: _Groups, alone: In
     order = np.concatenate((groups.places, alone))
     lengths = np.array([len(text) for text in texts], dtype=np.int64)[order]
     # Texts and fences take turns; where there is no fence, one of no length.
-    gaps = np.concatenate((groups.gaps, np.zeros(len(alone), dtype=np.int64)))
+    gaps = np.concatenate((_WIDTHS[groups.fences], np.zeros(len(alone), dtype=np.int64)))
     begins = bounds_of(np.stack((lengths, gaps), axis=1).reshape(-1))
     firsts = np.concatenate((groups.begins, np.arange(len(groups.places), len(order))))
     shift = np.repeat(begins[2 * firsts], np.diff(encoded.bounds))

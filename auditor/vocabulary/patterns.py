@@ -1,8 +1,8 @@
 """Does a splitting pattern always split at some places? Proved from the pattern itself.
 
-Two claims. *Before a single space*: a match that holds a character which is no whitespace ends
-before a U+0020 that follows it. *After a word*: a match that holds a letter or digit ends before
-the whitespace that follows it. In both, neither side of the place looks across it.
+Two claims are asked. *Before a space*: a match that holds a character which is no whitespace
+ends before a U+0020 that follows it. *Between two classes* (`adjoining`), *x* and *y*: a match that
+holds an *x* ends before a *y* that follows it. In both, neither side of the place looks across it.
 
 The first holds when every alternative of the pattern is of one of two forms:
 
@@ -10,54 +10,173 @@ The first holds when every alternative of the pattern is of one of two forms:
 - a body that cannot match U+0020, after at most one optional element that may;
 
 for then U+0020 can only come first in a match, or among whitespace. The second holds when besides,
-in every alternative, no element at or after one that matches a letter or digit matches whitespace.
-A look-ahead stands only behind whitespace, so that it never sees past the place. And every
-character must be matched by some alternative, or what no alternative matches would stay together.
-Anything this reader does not know is not proved, and such a pattern is never relied on.
+in no alternative, an element that matches *x* stands before one that matches *y*, or is repeated
+and matches both. What an element matches is tried with every character of the classes.
+
+A look-ahead stands only behind whitespace, so that it never sees past a place after anything else.
+After a line end it does, and decides: `\\s+(?!\\S)` takes two line ends before the end of a text,
+and one before a letter. So *x* may be a line end only when no other whitespace stands before it
+(where one character is left to match, one is matched), or when an alternative like `\\s*[\\r\\n]+`
+comes first and takes all whitespace up to the last line end, whatever follows.
+
+Every character must be matched by some alternative, or what no alternative matches would stay
+together, and none may match nothing, or it would keep the others from being tried. Anything this
+reader does not know is not proved, and such a pattern is never relied on.
 """
 
 from __future__ import annotations
 
+from collections.abc import Iterator
 from dataclasses import dataclass
 from functools import cache
 
+import numpy as np
 import regex
 
 from auditor.text import properties
+from auditor.vocabulary import adjoining
+from auditor.vocabulary.adjoining import Bools
 
 _ELEMENT = regex.compile(
     r"(?P<look>\(\?!\\S\)|\$)|(?P<group>\((?:\?i:|\?:)(?P<body>[^()]*)\))"
-    r"|(?P<unit>\[\^?(?:\\.\{[^}]*\}|\\.|[^\]\\])+\]|\\[pP]\{[^}]*\}|\\.|[^\\()\[\]|*+?{}^$.])"
+    r"|(?P<unit>\[\^?(?:\\.\{[^}]*\}|\\.|[^\]\\])+\]|\\[pP]\{[^}]*\}|\\[sSdDwWrntfv\W]"
+    r"|[^\\()\[\]|*+?{}^$.])"
 )
+# What engines read differently within a class: sets taken from sets, and classes within classes.
+_SETS = regex.compile(r"&&|--|~~|.\[")
+_ESCAPED = regex.compile(r"\\.")
+# Engines disagree on which numbers and rare letters these match.
+_VAGUE = regex.compile(r"\\[wW]")
 _QUANTIFIER = regex.compile(r"(?:[?*+]|\{\d+(?:,\d*)?\})[+?]?")
-_WORD_SAMPLE = "aZ09éßǅʰªЖωאسकก中あ가Ⅷ²½٣"
 _WHITESPACE_SAMPLE = " \t\n\r\v\f\x85\u00a0\u1680\u2003\u2028\u2029\u202f\u205f\u3000"
 
 
 @dataclass(frozen=True, slots=True)
 class _Part:
     source: str
-    optional: bool
+    quantifier: str
     look: bool
+
+    @property
+    def optional(self) -> bool:
+        return self.quantifier in {"?", "?+"}
+
+    @property
+    def repeated(self) -> bool:
+        return self.quantifier[:1] in {"*", "+", "{"}
 
     def matches(self, text: str) -> bool:
         return regex.fullmatch(self.source, text, flags=regex.V0) is not None
 
 
 @cache
-def splits_before_single_space(pattern: str) -> bool:
+def splits_before_space(pattern: str) -> bool:
     """Return whether the first claim is proved for ``pattern``."""
     alternatives = _alternatives(pattern)
     return alternatives is not None and all(map(_is_admitted, alternatives))
 
 
 @cache
-def splits_after_word(pattern: str) -> bool:
-    """Return whether both claims are proved for ``pattern``."""
+def splits_between(pattern: str) -> Bools:
+    """Return between which classes a split is proved, shape (CLASSES, CLASSES): *x*, then *y*."""
     alternatives = _alternatives(pattern)
-    return alternatives is not None and all(
-        _is_admitted(parts) and _ends_with_word(parts) for parts in alternatives
-    )
+    if alternatives is None or not all(map(_is_admitted, alternatives)):
+        return np.zeros((adjoining.CLASSES, adjoining.CLASSES), dtype=np.bool_)
+    joined = np.zeros((adjoining.CLASSES, adjoining.CLASSES), dtype=np.bool_)
+    for parts in alternatives:
+        for left, right in _following(parts, ignore_case=False):
+            joined |= np.outer(_matched(*left), _matched(*right))
+    return ~joined
+
+
+@cache
+def takes_line_ends(pattern: str) -> bool:
+    """Return whether *x* may be a line end with other whitespace before it."""
+    looked = False
+    for parts in _alternatives(pattern) or []:
+        if _takes_all_to_line_end(parts):
+            return True
+        looks = any(part.look for part in parts)
+        if looks and not _takes_all_to_text_end(parts):
+            return False
+        looked = looked or looks
+    return not looked
+
+
+def _takes_all_to_line_end(parts: list[_Part]) -> bool:
+    """Return whether ``parts`` are `\\s*[\\r\\n]+`, or that with another class of line ends."""
+    if len(parts) != 2 or (parts[0].source, parts[0].quantifier) != ("\\s", "*"):
+        return False
+    last = parts[1]
+    return _is_whitespace_only(last) and last.matches("\n") and last.quantifier in {"", "+", "++"}
+
+
+def _takes_all_to_text_end(parts: list[_Part]) -> bool:
+    """Return whether ``parts`` are `\\s++$`: the same whitespace, when nothing stands after it."""
+    return [(part.source, part.quantifier) for part in parts] == [("\\s", "++"), ("$", "")]
+
+
+# An element, and whether it is matched in either case.
+_Atom = tuple[str, bool]
+
+
+def _following(parts: list[_Part], *, ignore_case: bool) -> Iterator[tuple[_Atom, _Atom]]:
+    """Yield each two elements of which the second may match after the first in one match."""
+    held = [list(_atoms(part, ignore_case=ignore_case)) for part in parts]
+    for place, (part, lefts) in enumerate(zip(parts, held, strict=True)):
+        rights = [atom for later in held[place + 1 :] for atom in later]
+        rights += lefts if part.repeated else []
+        yield from ((left, right) for left in lefts for right in rights)
+        for branch in _inner(part):
+            insensitive = ignore_case or part.source.startswith("(?i:")
+            yield from _following(branch, ignore_case=insensitive)
+
+
+def _atoms(part: _Part, *, ignore_case: bool) -> Iterator[_Atom]:
+    if part.look:
+        return
+    if not part.source.startswith("("):
+        yield part.source, ignore_case
+        return
+    insensitive = ignore_case or part.source.startswith("(?i:")
+    for branch in _inner(part):
+        for inner in branch:
+            yield from _atoms(inner, ignore_case=insensitive)
+
+
+def _inner(part: _Part) -> list[list[_Part]]:
+    """Return the alternatives within a group; none of anything else."""
+    element = _ELEMENT.match(part.source)
+    if part.look or element is None or element["group"] is None:
+        return []
+    return [_parts(branch) for branch in _branches(element["body"])]
+
+
+@cache
+def _matched(source: str, ignore_case: bool) -> Bools:  # noqa: FBT001 - a key of the cache
+    """Return the classes of which an element matches some character, shape (CLASSES,)."""
+    compiled = regex.compile(source, regex.V0 | (regex.IGNORECASE if ignore_case else 0))
+    matched = [compiled.search(members) is not None for members in _members()]
+    found = np.array(matched, dtype=np.bool_)
+    if _VAGUE.search(source):
+        found[[adjoining.NUMBER, adjoining.SPECIAL]] = True
+    if ignore_case and found[list(adjoining.ASCII_WORDS)].any():
+        # Some engines match `ss` with ß.
+        found[[adjoining.LETTER, adjoining.SPECIAL]] = True
+    return found
+
+
+@cache
+def _members() -> tuple[str, ...]:
+    """Return the characters of each class; of those that are never *x* nor *y*, none."""
+    table = adjoining.classes()
+    ascii_characters = [chr(point) for point in range(128)]
+    lasting = (adjoining.LETTER, adjoining.NUMBER, adjoining.SPECIAL)
+    beyond = [
+        "".join(map(chr, np.flatnonzero(table == number).tolist())) if number in lasting else ""
+        for number in range(128, adjoining.CLASSES)
+    ]
+    return (*ascii_characters, *beyond)
 
 
 def _alternatives(pattern: str) -> list[list[_Part]] | None:
@@ -67,16 +186,6 @@ def _alternatives(pattern: str) -> list[list[_Part]] | None:
         return found if _covers_everything(pattern) else None
     except (ValueError, regex.error):
         return None
-
-
-def _ends_with_word(parts: list[_Part]) -> bool:
-    """Return whether nothing at or after an element that matches a word character matches space."""
-    reached = False
-    for part in parts:
-        reached = reached or _may_hold(part, _WORD_SAMPLE)
-        if reached and _may_hold(part, _WHITESPACE_SAMPLE):
-            return False
-    return True
 
 
 def _branches(pattern: str) -> list[str]:
@@ -103,14 +212,14 @@ def _parts(branch: str) -> list[_Part]:
     parts, place = [], 0
     while place < len(branch):
         element = _ELEMENT.match(branch, place)
-        if element is None:
+        if element is None or _SETS.search(_ESCAPED.sub("", element["unit"] or "")):
             raise ValueError(branch)
         place = element.end()
         quantifier = _QUANTIFIER.match(branch, place)
         if quantifier is not None:
             place = quantifier.end()
-        optional = quantifier is not None and quantifier[0] in {"?", "?+"}
-        parts.append(_Part(element[0], optional, element["look"] is not None))
+        times = "" if quantifier is None else quantifier[0]
+        parts.append(_Part(element[0], times, element["look"] is not None))
     if not parts:
         raise ValueError(branch)
     return parts
@@ -132,8 +241,7 @@ def _may_hold(part: _Part, sample: str) -> bool:
         return False
     if not part.source.startswith("("):
         return any(part.matches(character) for character in sample)
-    body = _ELEMENT.match(part.source)["body"]
-    return any(_may_hold(inner, sample) for branch in _branches(body) for inner in _parts(branch))
+    return any(_may_hold(inner, sample) for branch in _inner(part) for inner in branch)
 
 
 def _is_whitespace_only(part: _Part) -> bool:
@@ -168,4 +276,6 @@ _CATEGORIES = regex.findall("..", "LuLlLtLmLoMnMcMeNdNlNoPcPdPsPePiPfPoSmScSkSoZ
 
 def _covers_everything(pattern: str) -> bool:
     compiled = regex.compile(pattern)
+    if compiled.fullmatch("") is not None:
+        return False
     return all(compiled.fullmatch(character) for character in _sample())

@@ -8,7 +8,7 @@ from hypothesis import strategies as st
 
 from auditor.vocabulary.bytelevel import CHARACTER_OF_BYTE
 
-LETTERS = "abA1é.▁"
+LETTERS = "abA1é.(=▁"
 BYTE_LEVEL = {
     "type": "ByteLevel", "add_prefix_space": False, "trim_offsets": True, "use_regex": True,
 }  # fmt: skip
@@ -33,6 +33,18 @@ BERT = {
     "pre_tokenizer": {"type": "BertPreTokenizer"},
     "decoder": {"type": "WordPiece", "prefix": "##", "cleanup": True},
 }  # fmt: skip
+# Takes line ends after punctuation, and a character before a word.
+GLUING = (
+    r"(?i:'s|'t)|[^\r\n\p{L}\p{N}]?\p{L}+|\p{N}{1,3}| ?[^\s\p{L}\p{N}]+[\r\n]*|\s*[\r\n]+"
+    r"|\s+(?!\S)|\s+"
+)
+SPLIT = {"type": "Split", "pattern": {"Regex": GLUING}, "behavior": "Isolated", "invert": False}
+UNSPLIT = {**BYTE_LEVEL, "use_regex": False}
+GLUED = {"type": "Sequence", "pretokenizers": [SPLIT, UNSPLIT]}
+PREFIXED_PARTS = {
+    "type": "Sequence",
+    "pretokenizers": [{"type": "Digits", "individual_digits": False}, PREFIXED],
+}
 # Everything but the entries, by kind.
 KINDS: dict[str, dict[str, Any]] = {
     "byte-level": {"pre_tokenizer": BYTE_LEVEL, "decoder": BYTE_LEVEL},
@@ -40,10 +52,22 @@ KINDS: dict[str, dict[str, Any]] = {
     "byte-level, NFC": {
         "normalizer": {"type": "NFC"}, "pre_tokenizer": BYTE_LEVEL, "decoder": BYTE_LEVEL,
     },
+    "byte-level, glued": {"pre_tokenizer": GLUED, "decoder": BYTE_LEVEL},
+    "byte-level, glued, NFKC": {
+        "normalizer": {"type": "NFKC"}, "pre_tokenizer": GLUED, "decoder": BYTE_LEVEL,
+    },
+    "byte-level, glued, NFD": {
+        "normalizer": {"type": "NFD"}, "pre_tokenizer": GLUED, "decoder": BYTE_LEVEL,
+    },
+    "byte-level, prefixed parts": {"pre_tokenizer": PREFIXED_PARTS, "decoder": BYTE_LEVEL},
     "metaspace": {"pre_tokenizer": META, "decoder": META},
     "no splitter": {"normalizer": PREPEND, "decoder": STRIP},
     "bert": BERT,
+    "no splitter, unknown": {"normalizer": PREPEND, "decoder": STRIP},
     "whitespace": {"pre_tokenizer": {"type": "Whitespace"}},
+    "whitespace, NFKC": {
+        "normalizer": {"type": "NFKC"}, "pre_tokenizer": {"type": "WhitespaceSplit"},
+    },
 }  # fmt: skip
 
 joins = st.lists(st.tuples(*[st.text(LETTERS, min_size=1, max_size=3)] * 2), max_size=12)
@@ -63,8 +87,9 @@ def descriptions(draw: st.DrawFn, kind: str) -> dict[str, Any]:
         model = merged(list(CHARACTER_OF_BYTE.values()), [spelled(pair) for pair in pairs])
     else:
         fallback = kind == "no splitter"
+        unknown = unknown or ("<unk>" if kind == "no splitter, unknown" else None)
         pieces = [f"<0x{byte:02X}>" for byte in range(256)] if fallback else []
-        model = merged([*"abA1é.▁\n\t", *pieces], pairs)
+        model = merged([*"abA1é.(▁\n\t", *pieces], pairs)
         model |= {"byte_fallback": fallback, "fuse_unk": flag, "unk_token": unknown}
     return {"version": "1.0", "added_tokens": [added], **KINDS[kind], "model": model}
 
@@ -93,7 +118,7 @@ def merged(symbols: list[str], pairs: list[tuple[str, str]]) -> dict[str, Any]:
 def word_pieces(pairs: list[tuple[str, str]]) -> dict[str, Any]:
     """Return a WordPiece model of a few letters, their continuations and random words."""
     words = (left for left, _ in pairs)
-    entries = dict.fromkeys(["[UNK]", *"ab1e.,", "##a", "##b", "##1", *words])
+    entries = dict.fromkeys(["[UNK]", *"ab1e.,(", "##a", "##b", "##1", *words])
     return {
         "type": "WordPiece", "unk_token": "[UNK]", "continuing_subword_prefix": "##",
         "max_input_chars_per_word": 6,

@@ -70,11 +70,12 @@ class Noting:
     [
         ([" a1", " b1", "\na1"], [" a1 b1\na1"]),  # cuts of their own
         ([" a.", " b1", "\nab"], [" a. b1\nab"]),  # before a space and a letter
-        ([" a.", "\nab"], [" a. a\nab"]),  # after a full stop a line end is no cut: a fence
+        ([" a.", "\nab"], [" a.\nab"]),  # before whitespace
+        ([" a_", "_b"], [" a_ a\n_b"]),  # two that hold words together: a fence with a line end
         ([" a ", " b1", " a1"], [" b1 a1", " a "]),  # ends with a space: alone
         ([" ab"] * 5, [" ab" * 4, " ab"]),  # four to a group
         (["\u0301a", " b1"], [" b1", "\u0301a"]),  # no cut before it, fence or not
-        ([" a<", "s> b", " b"], [" a< b", "s> b"]),  # the same
+        ([" a<", "s> b", " b"], [" a<s> b b"]),  # between a sign and a letter
         ([" a<", " s>"], [" a<", " s>"]),  # together they would spell an added token
     ],
 )

@@ -21,11 +21,24 @@ from auditor.tallies.usage import UsageTally
 from auditor.tallies.whitespace import WhitespaceTally
 from auditor.text.stretch import Stretch
 from auditor.text.whitespace import KINDS as WHITESPACE_KINDS
-from auditor.vocabulary import VocabularySpec, open_vocabulary, separation
+from auditor.vocabulary import VocabularySpec, adjoining, open_vocabulary, separation
 from auditor.vocabulary.separation import separate
-from tests.unit.encoding.random_vocabularies import KINDS, descriptions
+from tests.unit.encoding.random_vocabularies import KINDS, descriptions, spelled
 
-ALPHABET = [*"abAé.,1 \n\t", "中", "\u0301", "▁", "<s>", "\u200b", "ß", "\u00a0", "  "]
+# Beside letters: what cuts are made at, what compatibility forms take apart (⒈), marks that join.
+ALPHABET = [
+    *"abAé.,1 \n\t(:='_\"",
+    "中",
+    "\u0301",
+    "▁",
+    "<s>",
+    "\u200b",
+    "ß",
+    "\u00a0",
+    "  ",
+    "⒈",
+    "\u0338",
+]
 document = st.lists(st.sampled_from(ALPHABET), max_size=16).map("".join)
 texts = st.lists(document, min_size=1, max_size=8)
 
@@ -100,7 +113,7 @@ def test_a_wrong_cut_is_noticed_by_the_run(folder, monkeypatch):
     vocabulary = opened(description, folder)
     right = measured(vocabulary, ["1a b1 a b"], whole=False)
     assert right[:2] == measured(vocabulary, ["1a b1 a b"], whole=True)[:2]
-    everywhere = (separation.closed_to_all(), dict.fromkeys(" \t\r\n", separation.settled_words()))
+    everywhere = (adjoining.classes(), adjoining.allowed_by_text())
     monkeypatch.setattr(separation, "_by_entries", lambda _: everywhere)
     with pytest.raises(SeparationError):
         measured(vocabulary, ["1a b1 a b"], whole=False)
@@ -113,3 +126,57 @@ def test_edges_and_line_ends_come_back_as_in_the_whole(kind, text, folder):
     vocabulary = opened(data_for(kind), folder)
     by_pieces = measured(vocabulary, ["a", text], whole=False)
     assert by_pieces[:2] == measured(vocabulary, ["a", text], whole=True)[:2]
+
+
+# A kind, entries joined beside those of the alphabet, and a text whose parts would join or part
+# otherwise if one condition of a cut were left out.
+ACROSS = {
+    "line ends before a letter": ("byte-level", ["\n\n"], "a\n\nb"),
+    "a number that ends in a full stop": ("byte-level, glued, NFKC", [".\n"], "⒈\na"),
+    "a mark that was part of a letter": ("byte-level, glued, NFD", ["\u0301\n"], "é\na"),
+    "a bracket before a word": ("byte-level, glued", ["(a"], "b(a"),
+    "punctuation before a line end": ("byte-level, glued", [".\n"], "b.\na"),
+    "a contraction": ("byte-level", ["'s"], "b's"),
+    "two characters without an entry": ("no splitter, unknown", [], "a%%b"),
+    "an entry beyond ASCII": ("no splitter", ["é("], "aé(b"),
+    "an entry of ASCII": ("no splitter", ["a("], "ba(b"),
+    "a line end within an entry": ("no splitter", ["\na"], "b\na"),
+    "two spaces within an entry": ("no splitter", ["a▁", "a▁▁"], "ba  b"),
+    "a space before each part": ("byte-level, prefixed parts", [" ("], "a(1"),
+    "a tab before each part": ("byte-level, prefixed parts", [" \t"], "a\tb"),
+    "decoded with a space before it": ("bert", [], "a(b"),
+}
+
+
+@pytest.mark.parametrize("name", list(ACROSS))
+def test_what_reaches_across_is_not_cut(name, folder):
+    """Each condition of a cut has a text that shows why it is there."""
+    kind, joined, text = ACROSS[name]
+    description = data_for(kind)
+    model = description["model"]
+    for number, entry in enumerate(joined):
+        left, right = parted(entry, kind)
+        model["vocab"][left + right] = 900 + number
+        model["merges"].append([left, right])
+    model |= {"fuse_unk": True} if kind == "no splitter, unknown" else {}
+    vocabulary = opened(description, folder)
+    by_pieces = measured(vocabulary, ["a", text], whole=False)
+    assert by_pieces[:2] == measured(vocabulary, ["a", text], whole=True)[:2]
+    assert by_pieces[2].by_pieces == 2
+
+
+def parted(entry, kind):
+    """Return the last two characters of an entry, or bytes, as the vocabulary spells them."""
+    if not kind.startswith("byte"):
+        return entry[:-1], entry[-1]
+    left, right = spelled((entry[:-1], entry[-1]))
+    return left[-1], right
+
+
+def test_a_mark_after_punctuation_decides(folder):
+    """`=` and a slash through it are no punctuation to this splitter, and stay with the letter."""
+    description = {**data_for("bert"), "normalizer": {"type": "NFC"}}
+    vocabulary = opened(description, folder)
+    text = ["a", "a=\u0338 b"]
+    by_pieces = measured(vocabulary, text, whole=False)
+    assert by_pieces[:2] == measured(vocabulary, text, whole=True)[:2]
