@@ -72,7 +72,7 @@ class Ledger:
         measure: MeasurePieces,
         sink: Sink,
         *,
-        most_rows: int = 100_000,
+        most_rows: int = 200_000,
         most_characters: int = 8 << 20,
     ) -> None:
         self._vocabularies = vocabularies
@@ -96,14 +96,15 @@ class Ledger:
 
     def missing(self, cut: Cut) -> list[int]:
         """Return the indices of the keys of ``cut`` that are not in the ledger."""
-        rows = self._rows
-        return [place for place, key in enumerate(cut.keys) if key not in rows]
+        known = np.fromiter(map(self._rows.__contains__, cut.keys), np.bool_, len(cut.keys))
+        new: list[int] = np.flatnonzero(~known).tolist()
+        return new
 
     def take_in(self, cut: Cut, new: list[int], source: int, lines: Ints) -> None:
         """Measure the ``new`` keys of ``cut``; ``lines`` (documents,) is where documents stand.
 
-        Pieces met for the first time, and once, are let go again by ``release``: most of them never
-        come back.
+        When half of the room is taken, pieces met for the first time, and once, are let go again by
+        ``release``: most of them never come back.
         """
         lasting, passing = self._parted(cut, new)
         full = len(self._rows) + len(lasting) > self._most_rows
@@ -124,6 +125,8 @@ class Ledger:
         places = np.array(new, dtype=np.int64)
         marks = np.array([hash(cut.keys[place]) & _MARKS - 1 for place in new], dtype=np.int64)
         known = self._met[marks] | (cut.counts[places] > 1)
+        # While there is room, a piece met again need not be measured again.
+        known |= len(self._rows) + len(new) <= self._most_rows // 2
         self._met[marks] = True
         return places[known].tolist(), places[~known].tolist()
 
@@ -162,8 +165,7 @@ class Ledger:
 
     def rows_of(self, cut: Cut) -> Ints:
         """Return the row of each key of ``cut``, all of which are in the ledger."""
-        rows = self._rows
-        return np.array([rows[key] for key in cut.keys], dtype=np.int64)
+        return np.fromiter(map(self._rows.__getitem__, cut.keys), np.int64, len(cut.keys))
 
     def count(self, rows: Ints, counts: Ints) -> None:
         """Add occurrences: row ``rows[i]`` occurs ``counts[i]`` times more; rows are distinct."""
