@@ -13,7 +13,6 @@ from typing import Any
 
 from auditor.corpus import find_sources, resolve_fields
 from auditor.encoding.documents import SeparationError, Tale
-from auditor.errors import SettingsError
 from auditor.report import contract, page, tables
 from auditor.runs.assembling import assemble
 from auditor.runs.measuring import Measurer, empty_tallies
@@ -25,6 +24,7 @@ from auditor.runs.reading import (
     Reading,
     batches,
     default_name,
+    named_apart,
     refuse_empty,
     with_conversations,
 )
@@ -82,7 +82,7 @@ def _audited(
 ) -> Written:
     workers = choose_workers(plan.workers, reading.total)
     with Processes(partial(Measurer, plan), workers) as processes:
-        facts = _named_apart(processes.facts)
+        facts = named_apart(processes.facts)
         folder = out or Path("reports") / default_name(plan, [own.name for own in facts])
         with OutputFolder(folder, overwrite=overwrite) as output:
             rows = DocumentRows(output.begun, [own.name for own in facts], plan.read.by)
@@ -107,18 +107,6 @@ def _audited(
             run = _run(plan, tale, fault, workers, reading.total, began)
             output.write("run.json", contract.dump(run))
             return Written(audit, worst, folder, output.finish())
-
-
-def _named_apart(facts: list[VocabularyFacts]) -> list[VocabularyFacts]:
-    """Return the facts, those that share a name renamed to what the user wrote."""
-    names = [own.name for own in facts]
-    apart = [own if names.count(own.name) == 1 else replace(own, name=own.source) for own in facts]
-    repeated = next(
-        (own.name for own in apart if [o.name for o in apart].count(own.name) > 1), None
-    )
-    if repeated is not None:
-        raise SettingsError("one vocabulary is named twice.", hint="Name it once.", where=repeated)
-    return apart
 
 
 def _worst_words(plan: Plan, facts: list[VocabularyFacts], tallies: AuditTallies) -> WorstWords:

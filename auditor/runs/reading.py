@@ -7,9 +7,10 @@ from dataclasses import dataclass, replace
 from pathlib import Path
 
 from auditor.corpus import Batch, Fields, Source, read
-from auditor.errors import CorpusError
+from auditor.errors import CorpusError, SettingsError
 from auditor.runs.plan import Plan
 from auditor.tallies.corpus import FlawsTally
+from auditor.vocabulary import VocabularyFacts
 from auditor.vocabulary.conversation import Renderer, chat_template
 from auditor.vocabulary.locate import locate
 
@@ -102,3 +103,15 @@ def refuse_empty(measured: int, set_aside: FlawsTally, names: list[str]) -> None
         hint=f"Most frequent reason: {set_aside.reasons.most_common(1)[0][0]}." if aside else None,
         where=", ".join(names[:3]),
     )
+
+
+def named_apart(facts: list[VocabularyFacts]) -> list[VocabularyFacts]:
+    """Return the facts, those that share a name renamed to what the user wrote."""
+    names = [own.name for own in facts]
+    apart = [own if names.count(own.name) == 1 else replace(own, name=own.source) for own in facts]
+    repeated = next(
+        (own.name for own in apart if [o.name for o in apart].count(own.name) > 1), None
+    )
+    if repeated is not None:
+        raise SettingsError("one vocabulary is named twice.", hint="Name it once.", where=repeated)
+    return apart
