@@ -12,7 +12,7 @@ from auditor.cli import progress, shared
 EXAMPLE = """\b
 Examples:
   auditor languages notes.jsonl --vocab my-model/ --by lang
-  auditor languages notices.jsonl --vocab my-model/ --by lang --parallel notice --reference en
+  auditor languages pairs.jsonl --vocab my-model/ --by lang --parallel id --reference en
 """
 
 

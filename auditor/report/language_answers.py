@@ -26,7 +26,7 @@ REMEDIES = {
         "{language}: a limit of {length} keeps {share} of its tokens that are cut off now"
     ),
     "entries for characters": (
-        "{language}: were its {entries} costliest byte-spelled characters entries, each one"
+        "{language}: were its costliest byte-spelled characters ({entries}) entries, each one"
         " token, {share} of its tokens would be saved"
     ),
     "entries for words": (

@@ -96,8 +96,9 @@ def refuse_empty(measured: int, set_aside: FlawsTally, names: list[str]) -> None
     if measured:
         return
     aside = set_aside.reasons.total()
+    counted = "1 record was" if aside == 1 else f"{aside} records were"
     raise CorpusError(
-        f"no document to measure; {aside} records were set aside."
+        f"no document to measure; {counted} set aside."
         if aside
         else "no document to measure: the corpus is empty.",
         hint=f"Most frequent reason: {set_aside.reasons.most_common(1)[0][0]}." if aside else None,
