@@ -234,7 +234,7 @@ class Documents:
     def _agrees(self, order: int, rows: Ints, whole: Measured, text: Columns, place: int) -> bool:
         """Return whether one document's pieces, ``rows``, add up to what it is as a whole."""
         one = np.array([0, len(rows)])
-        ids = np.concatenate([self._ledger.ids(order, row) for row in rows.tolist()])
+        ids = self._ledger.ids(order, rows)
         begin, end = whole.bounds[place : place + 2]
         if not np.array_equal(ids, whole.ids[begin:end]):
             return False

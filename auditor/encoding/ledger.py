@@ -191,13 +191,15 @@ class Ledger:
         documents = np.repeat(np.arange(len(bounds) - 1), np.diff(bounds))
         return self._profiles[vocabulary].expand(profile, documents)
 
-    def ids(self, vocabulary: int, row: int) -> Ints:
-        """Return the tokens of the piece in ``row``."""
-        begins = [block.begin for block in self._blocks]
-        block = self._blocks[int(np.searchsorted(begins, row, side="right")) - 1]
-        measured = block.measured[vocabulary]
-        begin, end = measured.bounds[row - block.begin : row - block.begin + 2]
-        return measured.ids[begin:end]
+    def ids(self, vocabulary: int, rows: Ints) -> Ints:
+        """Return the tokens of the pieces in ``rows``, one piece after the other."""
+        begins = np.array([block.begin for block in self._blocks], dtype=np.int64)
+        places = np.searchsorted(begins, rows, side="right") - 1
+        found = []
+        for place, row in zip(places.tolist(), (rows - begins[places]).tolist(), strict=True):
+            measured = self._blocks[place].measured[vocabulary]
+            found.append(measured.ids[measured.bounds[row] : measured.bounds[row + 1]])
+        return np.concatenate(found)
 
     def empty(self) -> None:
         """Hand what pieces hold to the sink, with their counts, and forget all pieces."""
