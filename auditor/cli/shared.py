@@ -55,7 +55,7 @@ _READING = (
         help="Processes [default: one a core for large corpora]; never changes a figure.",
     ),
     click.option(
-        "--batch-bytes", type=click.IntRange(min=1), default=1 << 19, show_default=True,
+        "--batch-bytes", type=click.IntRange(min=1), default=1 << 21, show_default=True,
         metavar="N", help="Text measured at a time; never changes a figure.",
     ),
 )  # fmt: skip

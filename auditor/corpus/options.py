@@ -41,7 +41,7 @@ class ReadOptions:
     parallel: str | None = None
     unit: Unit = "record"
     encoding: str | None = None
-    batch_bytes: int = 1 << 19
+    batch_bytes: int = 1 << 21
     batch_documents: int = 4096
     strict: bool = False
     render: Render | None = None
