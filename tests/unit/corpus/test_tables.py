@@ -168,6 +168,7 @@ def test_a_row_group_is_not_held_whole(tmp_path):
     [source] = find_sources([str(tmp_path / "a.parquet")])
     fields = resolve_fields([source], ReadOptions())
     before = pa.total_allocated_bytes()
-    held = [pa.total_allocated_bytes() - before for _ in read([source], ReadOptions(), fields)]
+    batches = read([source], ReadOptions(batch_bytes=1 << 19), fields)
+    held = [pa.total_allocated_bytes() - before for _ in batches]
     assert len(held) > 25
     assert max(held) < 8_000_000
