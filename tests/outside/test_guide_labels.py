@@ -1,4 +1,4 @@
-"""Documents whose script contradicts their label, against 600 paragraphs labelled by reading."""
+"""Documents whose script contradicts their label, against 900 paragraphs labelled by reading."""
 
 from __future__ import annotations
 
@@ -17,7 +17,8 @@ from tests.unit.runs.conftest import DEMO
 pytestmark = pytest.mark.outside
 
 LABELS = Path(__file__).with_name("guide_labels.tsv")
-RULED_ON, HELD_OUT = "1", "2"
+RULED_ON, HELD_OUT, SECOND_READER = "1", "2", "3"
+READINGS = {"contradicts", "fits", "no-prose"}
 
 
 @pytest.fixture(scope="module")
@@ -31,8 +32,10 @@ def judged(tmp_path_factory):
     lines = LABELS.read_text(encoding="utf-8").splitlines()
     rows = [line.split("\t") for line in lines if not line.startswith("#")]
     same = [row for row in rows if row[1] in texts and digest(texts[row[1]]["text"]) == row[2]]
-    assert len(rows) == 600
-    assert len(same) >= 570
+    assert len(rows) == len({row[1] for row in rows}) == 900
+    assert len(same) >= 855
+    for sample in (RULED_ON, HELD_OUT, SECOND_READER):
+        assert {row[3] for row in same if row[0] == sample} == READINGS
     corpus = folder / "paragraphs.jsonl"
     corpus.write_bytes(b"".join(orjson.dumps(texts[row[1]]) + b"\n" for row in same))
     spec = VocabularySpec(str(DEMO / "vocabularies" / "harbour-bytelevel"))
@@ -45,12 +48,14 @@ def judged(tmp_path_factory):
 
 
 @pytest.mark.parametrize(
-    ("sample", "precision", "recall"), [(RULED_ON, 0.95, 0.70), (HELD_OUT, 0.95, 0.80)]
+    ("sample", "precision", "recall"),
+    [(RULED_ON, 0.95, 0.70), (HELD_OUT, 0.95, 0.80), (SECOND_READER, 0.95, 0.80)],
 )
 def test_what_is_listed_contradicts_by_reading_too(judged, sample, precision, recall):
-    """Measured: precision 100 % on both; recall 75 % where the rule was set, 85 % held out.
+    """Measured: precision 100 % on all; recall 75 % where the rule was set, 85 % on the others.
 
-    What is missed are headings and single short sentences, which are too little to say.
+    What is missed are mostly headings and single short sentences, which are too little to say; also
+    sentences all in capitals, and some that quote a long title in the label's own script.
     """
     own = [(label == "contradicts", listed) for name, label, listed in judged if name == sample]
     right = sum(truth and listed for truth, listed in own)
