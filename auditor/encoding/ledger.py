@@ -63,7 +63,8 @@ class Ledger:
     """Distinct pieces and their measures under each of ``vocabularies`` vocabularies.
 
     ``measure`` measures pieces that are new; ``sink`` takes in what pieces hold, with how often
-    each occurred, whenever the ledger is emptied. ``rows`` and ``bytes_held`` are bounded.
+    each occurred, whenever the ledger is emptied. ``most_rows`` and
+    ``most_characters`` bound what is held.
     """
 
     def __init__(

@@ -62,10 +62,3 @@ class LengthHistogram:
         documents = np.zeros(len(lengths), dtype=np.int64)
         np.add.at(documents, place, self.documents)
         return LengthHistogram(lengths, documents)
-
-    def up_to(self, length: int) -> LengthHistogram | None:
-        """Return the histogram of the documents not longer than ``length``; None when none are."""
-        kept = self.lengths <= length
-        if not kept.any():
-            return None
-        return LengthHistogram(self.lengths[kept], self.documents[kept])

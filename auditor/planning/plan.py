@@ -7,6 +7,8 @@ from dataclasses import asdict, dataclass
 from fractions import Fraction
 from typing import Any
 
+from auditor.encoding.pairs import PAIR_WAYS
+from auditor.encoding.truncation import PARTS, WAYS, Candidate
 from auditor.errors import SettingsError
 from auditor.figures.catalogue import Figure
 from auditor.figures.values import Basis, compute
@@ -25,9 +27,7 @@ MOST_BUCKETS = 8
 DEPTHS = {"worst_fit_3": 3, "worst_fit_8": 8, "worst_fit": None}
 FROM_AUDIT = "not measured: a plan from an audit knows lengths only; plan the corpus itself"
 OF_PAIRS = "not measured for two-part inputs"
-# What is cut, by way; the names of the columns and of the totals they are shares of.
-WAYS = ("end", "start", "middle")
-PAIR_WAYS = ("longest_first", "first_only", "second_only")
+# What is cut: the names of the columns, and of the totals they are shares of.
 _CUT = {
     "lost_characters": "characters",
     "lost_words": "words",
@@ -159,23 +159,16 @@ def _positions(known: Known, length: int) -> Json:
         return {"cutting": None, "sentences": None, "note": FROM_AUDIT}
     names, ways = (_PAIR_CUT, PAIR_WAYS) if known.paired else (_CUT, WAYS)
     basis = Basis(known.cuts, known.cuts)
+    named = Candidate(length, length - known.overhead).column
     cutting = {
-        way: {name: _share(basis, f"{length}:{way}:{name}", of) for name, of in names.items()}
+        way: {name: _share(basis, named(name, way), of) for name, of in names.items()}
         for way in ways
     }
     if known.paired:
         return {"cutting": cutting, "sentences": None, "note": f"words and windows: {OF_PAIRS}"}
-    parts = {
-        name: known.cuts.total(ALL, f"{length}:{name}")
-        for name in ("sentence_parts", "cuts_inside_sentence")
-    }
-    return {
-        "cutting": cutting,
-        "sentences": {
-            "parts": parts["sentence_parts"], "cuts_inside_sentence": parts["cuts_inside_sentence"]
-        },
-        "note": None,
-    }  # fmt: skip
+    parts, broken = (known.cuts.total(ALL, named(name)) for name in PARTS)
+    sentences = {"parts": parts, "cuts_inside_sentence": broken}
+    return {"cutting": cutting, "sentences": sentences, "note": None}
 
 
 def _share(basis: Basis, column: str, of: str) -> Json:

@@ -18,7 +18,7 @@ import numpy as np
 import numpy.typing as npt
 
 from auditor.text import properties
-from auditor.vocabulary.tokenizers_engine import METASPACE
+from auditor.vocabulary.steps import METASPACE
 
 Bytes = npt.NDArray[np.uint8]
 Bools = npt.NDArray[np.bool_]

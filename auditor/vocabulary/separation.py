@@ -29,12 +29,8 @@ from auditor.vocabulary.patterns import (
 )
 from auditor.vocabulary.ranks_engine import RanksEngine
 from auditor.vocabulary.sentencepiece_engine import SentencePieceEngine
-from auditor.vocabulary.tokenizers_engine import (
-    METASPACE,
-    TokenizersEngine,
-    rejoined,
-    steps_of,
-)
+from auditor.vocabulary.steps import METASPACE, rejoined, steps_of
+from auditor.vocabulary.tokenizers_engine import TokenizersEngine
 
 # Normalisers that act on each character, or on a character and the marks after it: a space is
 # neither joined to what stands before it nor moved.

@@ -24,8 +24,8 @@ from auditor.vocabulary.engine import (
     interleaved,
 )
 from auditor.vocabulary.spelling import Spelling
+from auditor.vocabulary.steps import METASPACE, rejoined, steps_of
 
-METASPACE = "\u2581"
 # Characters that Unicode's composed form leaves as they are, whatever stands beside them (UAX #15,
 # section 9): what is settled of an assigned character stays so in later versions.
 _COMPOSED = r"(?V1)[\p{NFC_QC=Y}&&\p{ccc=0}&&\P{Cn}]"
@@ -239,23 +239,9 @@ def _picked(texts: list[str], chosen: Bools) -> list[str]:
     return [texts[place] for place in np.flatnonzero(chosen).tolist()]
 
 
-def steps_of(description: dict[str, Any], part: str) -> list[dict[str, Any]]:
-    """Return the steps of a normaliser, pre-tokeniser or decoder, sequences laid flat."""
-    return _flattened(description.get(part))
-
-
 def _without_entries(description: dict[str, Any]) -> dict[str, Any]:
     left = {k: v for k, v in description["model"].items() if k not in {"vocab", "merges"}}
     return {**description, "model": left}
-
-
-def _flattened(step: dict[str, Any] | None) -> list[dict[str, Any]]:
-    if step is None:
-        return []
-    for inner in ("normalizers", "pretokenizers", "decoders", "processors"):
-        if step["type"] == "Sequence" and inner in step:
-            return [leaf for child in step[inner] for leaf in _flattened(child)]
-    return [step]
 
 
 def _for_measuring(description: dict[str, Any]) -> dict[str, Any]:
@@ -269,13 +255,6 @@ def _for_measuring(description: dict[str, Any]) -> dict[str, Any]:
     ]
     changed["decoder"] = rejoined(steps, "decoders")
     return changed
-
-
-def rejoined(steps: list[dict[str, Any]], inner: str) -> dict[str, Any] | None:
-    """Return one step, or a sequence of them under the name ``inner``; ``None`` for none."""
-    if len(steps) <= 1:
-        return steps[0] if steps else None
-    return {"type": "Sequence", inner: steps}
 
 
 def _load(description: dict[str, Any], where: str) -> Tokenizer:

@@ -16,6 +16,7 @@ from auditor.errors import SettingsError
 from auditor.planning import padding
 from auditor.planning.histogram import LengthHistogram
 from auditor.planning.padding import Padding, fixed, random_batches, similar_batches
+from tests.unit.planning.documents import histogram_of
 from tests.unit.planning.squad_lengths import squad
 
 ROUNDING = Fraction(1, 10**14)  # the promise is 1e-12
@@ -56,10 +57,6 @@ histograms = st.dictionaries(st.integers(0, 2000), st.integers(1, 60), min_size=
     lambda table: LengthHistogram.of(sorted(table.items()))
 )
 tiny = st.lists(st.integers(0, 9), min_size=1, max_size=6)
-
-
-def histogram_of(lengths: list[int]) -> LengthHistogram:
-    return LengthHistogram.of(sorted((n, lengths.count(n)) for n in set(lengths)))
 
 
 def test_the_notes_worked_by_hand():
