@@ -1,16 +1,14 @@
-"""Figures over pairs of records that hold the same content, and ratios of independent ratios."""
+"""Figures over pairs of records that hold the same content."""
 
 from __future__ import annotations
 
 import math
 from collections.abc import Sequence
-from typing import Any
 
 from auditor.figures.intervals import Z, ratio_interval
 from auditor.figures.values import Value, undefined
 from auditor.tallies.moments import Moments
 
-Json = dict[str, Any]
 NO_PAIRS = "no content is held by both"
 ONE_PAIR = "one pair: no interval"
 
@@ -52,24 +50,3 @@ def mean_of_ratios(pairs: Sequence[tuple[int, int]]) -> Value:
     squares = math.fsum((ratio - mean) ** 2 for ratio in ratios)
     half = Z * math.sqrt(squares / (len(ratios) - 1) / len(ratios))
     return Value(mean, mean - half, mean + half, None, None, note)
-
-
-def ratio_of_ratios(ours: Json, theirs: Json) -> Value:
-    """Return one figure over another of independent documents; both as JSON values.
-
-    The interval is by the delta method on the logarithm: relative standard errors add in squares.
-    """
-    if not ours["value"] or not theirs["value"]:
-        return undefined("one of the two is undefined or 0")
-    ratio = ours["value"] / theirs["value"]
-    errors = [_relative_error(figure) for figure in (ours, theirs)]
-    if None in errors:
-        return Value(ratio, None, None, None, None, "one of the two has no interval")
-    spread = math.exp(Z * math.sqrt(sum(error * error for error in errors if error is not None)))
-    return Value(ratio, ratio / spread, ratio * spread, None, None)
-
-
-def _relative_error(figure: Json) -> float | None:
-    if figure["high"] is None:
-        return None
-    return float((figure["high"] - figure["value"]) / Z / figure["value"])

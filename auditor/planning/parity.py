@@ -6,7 +6,8 @@ from collections.abc import Mapping, Sequence
 from fractions import Fraction
 from typing import Any
 
-from auditor.figures.paired import mean_of_ratios, ratio_of_ratios, ratio_of_totals
+from auditor.figures import independent
+from auditor.figures.paired import mean_of_ratios, ratio_of_totals
 from auditor.figures.values import Value
 from auditor.planning.candidates import rounded, smallest
 from auditor.planning.histogram import LengthHistogram
@@ -74,7 +75,7 @@ def spread(tokens: Mapping[str, Held], premiums: Mapping[str, Json]) -> Json | N
 
 def relative(ours: Json, theirs: Json) -> Json:
     """Return the cost by character, grapheme and byte over the reference's: weaker evidence."""
-    return {name: ratio_of_ratios(ours[name], theirs[name]).as_json() for name in WEAKER}
+    return {name: independent.ratio(ours[name], theirs[name]).as_json() for name in WEAKER}
 
 
 def room(figures: Json, room_tokens: int | None, reference_words: Json | None) -> Json | None:

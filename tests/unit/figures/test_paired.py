@@ -7,7 +7,7 @@ import math
 import pytest
 
 from auditor.figures.intervals import Z
-from auditor.figures.paired import mean_of_ratios, ratio_of_ratios, ratio_of_totals
+from auditor.figures.paired import mean_of_ratios, ratio_of_totals
 from tests.unit.figures.test_published_statistics import CITIES
 
 # Three contents: tokens of a language and of the reference.
@@ -52,17 +52,3 @@ def test_contents_without_tokens_on_the_other_side():
     found = mean_of_ratios([(2, 1), (4, 1), (3, 0)])
     assert (found.value, found.note) == (3.0, "1 pair is left out: no tokens on the other side")
     assert ratio_of_totals([(3, 0)]).note == "the other side has no tokens"
-
-
-def test_a_ratio_of_independent_ratios():
-    """Relative errors add in squares: 3 % and 4 % make 5 % (delta method on the logarithm)."""
-
-    def figure(value, share):
-        return {"value": value, "high": value * (1 + Z * share)}
-
-    found = ratio_of_ratios(figure(6.0, 0.03), figure(2.0, 0.04))
-    assert found.value == 3.0
-    assert math.log(found.high / 3.0) == pytest.approx(Z * 0.05, rel=1e-9)
-    assert found.low * found.high == pytest.approx(9.0, rel=1e-12)
-    assert ratio_of_ratios(figure(6.0, 0.03), {"value": 2.0, "high": None}).low is None
-    assert ratio_of_ratios({"value": None, "high": None}, figure(1.0, 0.1)).value is None
