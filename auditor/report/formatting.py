@@ -112,3 +112,35 @@ def plural(number: int, noun: str, several: str | None = None) -> str:
 def plain_name(name: str) -> str:
     """Return a figure's name as words."""
     return name.replace("_", " ")
+
+
+def proportion(share: float | None) -> str:
+    """Return a share that was counted, with three digits; 0% and 100% only when it is exact."""
+    if share is None:
+        return "–"
+    if share in (0, 1):
+        return f"{share:.0%}"
+    shown = f"{100 * share:.3g}"
+    if float(shown) >= 100:
+        return ">99.9%"
+    return f"{shown}%" if "e" not in shown else f"{100 * share:.1e}%"
+
+
+def times(ratio: float) -> str:
+    """Return a ratio with three digits."""
+    return f"{ratio:.3g} ×"
+
+
+def figure(held: Json, digits: int = 3) -> str:
+    """Return a value with its interval; a dash where it is undefined."""
+    if held["value"] is None:
+        return "–"
+    value = number(held["value"], digits)
+    if held["low"] is None or held["high"] is None:
+        return value
+    return f"{value} ({number(held['low'], digits)} to {number(held['high'], digits)})"
+
+
+def number(value: float, digits: int = 3) -> str:
+    """Return a number with so many digits, never with a power of ten."""
+    return f"{value:,.0f}" if abs(value) >= 10**digits else f"{value:.{digits}g}"

@@ -5,8 +5,7 @@ from __future__ import annotations
 from collections.abc import Iterator, Mapping
 from typing import Any
 
-from auditor.report.formatting import clean, count, plural
-from auditor.report.plan_answers import proportion
+from auditor.report.formatting import clean, count, figure, plural, proportion
 
 Json = Mapping[str, Any]
 
@@ -42,21 +41,6 @@ def answers(document: Json, vocabulary: Json) -> list[str]:
     parts = (_costliest, _spread, _why, _remedies)
     told = [sentence for part in parts for sentence in part(vocabulary)]
     return [*told, *label_answers(document)]
-
-
-def figure(held: Json, digits: int = 3) -> str:
-    """Return a value with its interval; a dash where it is undefined."""
-    if held["value"] is None:
-        return "–"
-    value = number(held["value"], digits)
-    if held["low"] is None or held["high"] is None:
-        return value
-    return f"{value} ({number(held['low'], digits)} to {number(held['high'], digits)})"
-
-
-def number(value: float, digits: int = 3) -> str:
-    """Return a number with so many digits, never with a power of ten."""
-    return f"{value:,.0f}" if abs(value) >= 10**digits else f"{value:.{digits}g}"
 
 
 def _costliest(vocabulary: Json) -> Iterator[str]:

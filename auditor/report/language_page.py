@@ -10,9 +10,8 @@ from jinja2 import Environment
 from markupsafe import Markup
 
 from auditor.report import answers, language_answers, language_charts, repeating
-from auditor.report.language_answers import figure, number
+from auditor.report.formatting import figure, number, proportion
 from auditor.report.page import environment
-from auditor.report.plan_answers import proportion
 from auditor.report.tables import character_name
 
 Json = Mapping[str, Any]

@@ -12,9 +12,7 @@ from rich.table import Table
 from rich.text import Text
 
 from auditor.report import answers, language_answers
-from auditor.report.formatting import clean, count, plural, value
-from auditor.report.language_answers import figure
-from auditor.report.plan_answers import proportion
+from auditor.report.formatting import clean, count, figure, plural, proportion, value
 from auditor.report.terminal import line, rendered, written
 
 Json = Mapping[str, Any]

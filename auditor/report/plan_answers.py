@@ -5,7 +5,7 @@ from __future__ import annotations
 from collections.abc import Iterator, Mapping
 from typing import Any
 
-from auditor.report.formatting import clean, count, plural, ranged
+from auditor.report.formatting import clean, count, plural, proportion, ranged, times
 
 Json = Mapping[str, Any]
 
@@ -38,23 +38,6 @@ def candidate(plan: Json, length: int) -> Json:
 def percent(share: float) -> str:
     """Return a share that was given, such as the accepted one, with the digits it has."""
     return f"{100 * share:.6g}%"
-
-
-def proportion(share: float | None) -> str:
-    """Return a share that was counted, with three digits; 0% and 100% only when it is exact."""
-    if share is None:
-        return "–"
-    if share in (0, 1):
-        return f"{share:.0%}"
-    shown = f"{100 * share:.3g}"
-    if float(shown) >= 100:
-        return ">99.9%"
-    return f"{shown}%" if "e" not in shown else f"{100 * share:.1e}%"
-
-
-def times(ratio: float) -> str:
-    """Return a ratio with three digits."""
-    return f"{ratio:.3g} ×"
 
 
 def cuts(own: Json) -> str:

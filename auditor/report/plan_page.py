@@ -14,8 +14,9 @@ from jinja2 import Environment
 from markupsafe import Markup
 
 from auditor.report import answers, bins, charts, plan_answers, repeating
+from auditor.report.formatting import proportion, times
 from auditor.report.page import environment
-from auditor.report.plan_answers import candidate, proportion, times
+from auditor.report.plan_answers import candidate
 
 Json = Mapping[str, Any]
 

@@ -12,8 +12,8 @@ from rich.table import Table
 from rich.text import Text
 
 from auditor.report import answers
-from auditor.report.formatting import clean, count, plural, value
-from auditor.report.plan_answers import candidate, proportion
+from auditor.report.formatting import clean, count, plural, proportion, value
+from auditor.report.plan_answers import candidate
 from auditor.report.terminal import line, rendered, written
 
 Json = Mapping[str, Any]

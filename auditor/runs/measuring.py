@@ -52,10 +52,14 @@ class Finished:
 
 
 class Measurer:
-    """Measures batches under every vocabulary of a plan; opens them once."""
+    """Measures batches under every vocabulary of a plan; opens them once.
 
-    def __init__(self, plan: Plan) -> None:
+    ``kept`` names the columns of each document that an outcome holds.
+    """
+
+    def __init__(self, plan: Plan, kept: tuple[str, ...] = ROW_COLUMNS) -> None:
         self._plan = plan
+        self._kept = kept
         self.vocabularies = [open_vocabulary(spec) for spec in plan.vocabularies]
         self.facts = [facts_of(vocabulary) for vocabulary in self.vocabularies]
         self._batches = 0
@@ -104,7 +108,8 @@ class Measurer:
         documents = empty_documents(self._plan, self.facts)
         for tally, own, runs in zip(documents, rows, counted.runs, strict=True):
             tally.add({**counted.text, **own}, runs, groups, batch.origins)
-        return Outcome(batch, corpus, documents, counted.text, [_kept(own) for own in rows])
+        kept = [{name: own[name] for name in self._kept} for own in rows]
+        return Outcome(batch, corpus, documents, counted.text, kept)
 
 
 def without_failing(batch: Batch, vocabularies: Sequence[Vocabulary]) -> Batch:
@@ -182,10 +187,6 @@ def without(batch: Batch, places: set[int], flaws: list[Flaw]) -> Batch:
         contents=None if batch.contents is None else only(batch.contents),
         set_aside=[*batch.set_aside, *flaws],
     )
-
-
-def _kept(columns: Columns) -> Columns:
-    return {name: columns[name] for name in ROW_COLUMNS}
 
 
 def _place(flaw: Flaw, source_number: int) -> FlawPlace:

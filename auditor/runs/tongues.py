@@ -2,12 +2,13 @@
 
 from __future__ import annotations
 
-import unicodedata
 from dataclasses import dataclass, field
 
 import numpy as np
 
 from auditor.corpus import Batch
+from auditor.encoding import composed
+from auditor.encoding.composed import not_composed
 from auditor.encoding.measures import Reading
 from auditor.encoding.scripted import (
     IN_BROKEN,
@@ -34,7 +35,6 @@ from auditor.vocabulary.forms import FormPair, normal_forms
 from auditor.vocabulary.spans import correct
 
 CHARACTER_COLUMNS = ("count", "tokens")
-FORM_COLUMNS = ("documents", "characters", "tokens", "tokens_as_nfc")
 LABEL_COLUMNS = ("documents",)
 NOT_NFC, SPENT = "not in NFC", "spent"
 CONTRADICTS = "contradicts: "
@@ -64,7 +64,7 @@ class VocabularyTallies:
     scripts: RowsTally = field(default_factory=lambda: RowsTally(SCRIPT_COLUMNS))
     characters: RowsTally = field(default_factory=lambda: RowsTally(CHARACTER_COLUMNS))
     spent: RowsTally = field(default_factory=lambda: RowsTally((*SPENT_ON, IN_BROKEN)))
-    forms: RowsTally = field(default_factory=lambda: RowsTally(FORM_COLUMNS))
+    forms: RowsTally = field(default_factory=lambda: RowsTally(composed.COLUMNS))
 
     def merge(self, other: VocabularyTallies) -> None:
         """Add the counts of ``other``."""
@@ -175,32 +175,15 @@ class LanguageMeasurer:
         every = np.arange(len(stretch))
         table = np.stack([spent[name] for name in (*SPENT_ON, IN_BROKEN)], axis=1)
         tallies.spent.add(every, 0 * every, [SPENT], table, groups)
-        _add_forms(tallies.forms, vocabulary, stretch.texts, tokens, groups)
+        documents, forms = not_composed(vocabulary.engine, stretch.texts, tokens)
+        if len(documents):
+            tallies.forms.add(documents, 0 * documents, [NOT_NFC], forms, groups)
 
 
 def _add_rows(
     tally: RowsTally, found: ScriptRows, names: tuple[str, ...] | list[str], groups: list[Grouping]
 ) -> None:
     tally.add(found.documents, found.scripts, list(names), found.counts, groups)
-
-
-def _add_forms(
-    tally: RowsTally,
-    vocabulary: Vocabulary,
-    texts: list[str],
-    tokens: Ints,
-    groups: list[Grouping],
-) -> None:
-    """Add the documents that are not in NFC (UAX #15), as they are and normalised."""
-    places = [i for i, text in enumerate(texts) if not unicodedata.is_normalized("NFC", text)]
-    if not places:
-        return
-    composed = [unicodedata.normalize("NFC", texts[place]) for place in places]
-    as_nfc = np.diff(vocabulary.engine.encode(composed).bounds)
-    documents = np.array(places, dtype=np.int64)
-    lengths = np.array([len(texts[place]) for place in places], dtype=np.int64)
-    table = np.stack([np.ones_like(documents), lengths, tokens[documents], as_nfc], axis=1)
-    tally.add(documents, 0 * documents, [NOT_NFC], table, groups)
 
 
 def _check_labels(

@@ -14,7 +14,8 @@ from auditor.corpus import ReadOptions
 from auditor.planning.model import parse_model
 from auditor.planning.plan import Wishes
 from auditor.report import contract
-from auditor.report.plan_answers import candidate, percent, proportion, times
+from auditor.report.formatting import proportion, times
+from auditor.report.plan_answers import candidate, percent
 from auditor.runs.auditing import assess
 from auditor.runs.audits import audit_at
 from auditor.runs.lengths import plan_from_audit, plan_from_corpus

@@ -1,0 +1,274 @@
+"""Vetting vocabularies for a domain: a corpus and candidates in, a written comparison out."""
+
+from __future__ import annotations
+
+from collections.abc import Callable
+from dataclasses import dataclass, field, replace
+from functools import partial
+from pathlib import Path
+from typing import Any
+
+from auditor.corpus import find_sources, resolve_fields
+from auditor.encoding.documents import SeparationError
+from auditor.errors import SettingsError
+from auditor.figures import sidebyside
+from auditor.planning import fit, ranking
+from auditor.planning.histogram import LengthHistogram
+from auditor.planning.model import ModelShape
+from auditor.report import contract, domain_answers, domain_page, domain_tables, tables
+from auditor.runs import yardstick
+from auditor.runs.assembling import assemble
+from auditor.runs.audits import audit_at
+from auditor.runs.auditing import WorstWords, worst_words
+from auditor.runs.measuring import Finished, empty_tallies
+from auditor.runs.output import DOMAIN_FILES, OutputFolder
+from auditor.runs.plan import Plan
+from auditor.runs.processes import Processes, choose_workers
+from auditor.runs.reading import (
+    Progress,
+    Reading,
+    batches,
+    default_name,
+    named_apart,
+    refuse_empty,
+    with_conversations,
+)
+from auditor.runs.tallied import AuditTallies
+from auditor.runs.vetting import HALF, NOT_NFC, DomainMeasurer, DomainOutcome, DomainTallies
+from auditor.runs.yardstick import Yardstick
+from auditor.tallies.groups import ALL
+from auditor.vocabulary import VocabularyFacts
+
+Json = dict[str, Any]
+Tell = Callable[[Progress], None] | None
+
+
+@dataclass(frozen=True)
+class DomainWishes:
+    """What a vetting is asked for beside reading the corpus.
+
+    ``general`` names the text that is the yardstick, or one earlier audit; ``general_text`` its
+    text fields where they are others. ``weights`` are those of the ranking. ``width`` or ``shape``
+    say what model pays.
+    """
+
+    general: tuple[str, ...] = ()
+    general_text: tuple[str, ...] | None = None
+    weights: dict[str, float] = field(default_factory=lambda: dict(ranking.USUAL))
+    width: int | None = None
+    shape: ModelShape | None = None
+
+
+@dataclass(frozen=True)
+class WrittenDomain:
+    """A finished vetting: the document of `domain.json` and the files that were written."""
+
+    document: Json
+    folder: Path
+    files: list[Path]
+
+
+def vet_domain(
+    plan: Plan,
+    wishes: DomainWishes,
+    out: Path | None = None,
+    *,
+    overwrite: bool = False,
+    progress: Tell = None,
+) -> WrittenDomain:
+    """Vet the vocabularies of ``plan`` for its corpus and write what was found to ``out``.
+
+    Raises AuditError for whatever the user can mend; then nothing is written.
+    """
+    if "-" in plan.corpus and "-" in wishes.general:
+        raise SettingsError(
+            "standard input cannot be both the domain and the general text.",
+            hint="Write one of them to a file.",
+        )
+    try:
+        return _vetted(plan, wishes, out, overwrite=overwrite, progress=progress)
+    except SeparationError:
+        if "-" in (*plan.corpus, *wishes.general):  # it cannot be read again
+            raise
+        again = replace(plan, whole=True)
+        return _vetted(again, wishes, out, overwrite=overwrite, progress=progress)
+
+
+def _vetted(
+    plan: Plan, wishes: DomainWishes, out: Path | None, *, overwrite: bool, progress: Tell
+) -> WrittenDomain:
+    sources = find_sources(plan.corpus)
+    fields = resolve_fields(sources, plan.read)
+    plan, how = with_conversations(plan, fields)
+    reading = Reading(sources, fields, how, progress)
+    workers = choose_workers(plan.workers, reading.total)
+    audit = audit_at(wishes.general[0]) if len(wishes.general) == 1 else None
+    with Processes(partial(DomainMeasurer, plan), workers) as processes:
+        facts = named_apart(processes.facts)
+        general = None if audit is None else yardstick.from_audit(audit, plan, facts)
+        named = default_name(plan, [own.name for own in facts])
+        folder = out or Path("reports") / f"{named}--domain"
+        with OutputFolder(folder, overwrite=overwrite, files=DOMAIN_FILES) as output:
+            tallies, own = _measured(plan, facts, processes, reading)
+            if wishes.general and general is None:
+                other = yardstick.general_plan(plan, wishes.general, wishes.general_text)
+                general = yardstick.measured(other, progress)
+            worst = worst_words(plan, facts, tallies)
+            document = _Vetting(plan, wishes, reading, facts, tallies, own, general).document()
+            _write(output, document, worst)
+            return WrittenDomain(document, folder, output.finish())
+
+
+def _measured(
+    plan: Plan,
+    facts: list[VocabularyFacts],
+    processes: Processes[DomainOutcome, Finished],
+    reading: Reading,
+) -> tuple[AuditTallies, DomainTallies]:
+    tallies, own = empty_tallies(plan, facts), DomainTallies.empty(len(facts))
+    for found in processes.measured(batches(plan, reading)):
+        tallies.merge_documents(found.corpus, found.audit)
+        own.merge(found.own)
+    refuse_empty(tallies.measured, tallies.corpus.set_aside, reading.names)
+    for finished in processes.finished():
+        tallies.merge_contents(finished.contents)
+    return tallies, own
+
+
+def _write(output: OutputFolder, document: Json, worst: WorstWords) -> None:
+    output.write("domain.json", contract.dump(document))
+    output.write("candidates.csv", tables.as_csv(domain_tables.candidates(document)))
+    output.write("penalty.csv", tables.as_csv(domain_tables.penalty(document)))
+    output.write("words.csv", tables.as_csv(tables.words(worst)))
+    output.write("report.html", domain_page.render(document, worst))
+
+
+class _Vetting:
+    """Lays the document of `domain.json` out from the tallies of a finished run."""
+
+    def __init__(
+        self,
+        plan: Plan,
+        wishes: DomainWishes,
+        reading: Reading,
+        facts: list[VocabularyFacts],
+        tallies: AuditTallies,
+        own: DomainTallies,
+        general: Yardstick | None,
+    ) -> None:
+        settings: Json = {
+            "fields": reading.fields.as_json(),
+            "conversations": reading.conversations,
+            "general": list(wishes.general),
+            "weights": wishes.weights,
+            "width": wishes.width,
+            "model": None if wishes.shape is None else wishes.shape.as_json(),
+        }
+        self._audit = assemble(plan, facts, tallies, reading.names, settings)
+        self._wishes, self._facts = wishes, facts
+        self._tallies, self._own, self._general = tallies, own, general
+
+    def document(self) -> Json:
+        """Return the whole document."""
+        audit = self._audit
+        candidates = [self._candidate(place) for place in range(len(self._facts))]
+        document: Json = {
+            "format": "auditor/domain",
+            "version": 1,
+            "settings": audit["settings"],
+            "made_with": audit["made_with"],
+            "corpus": audit["corpus"],
+            "general": None if self._general is None else self._general.about,
+            "candidates": candidates,
+            "penalty": self._penalty(),
+            "ranking": self._ranking(candidates),
+        }
+        document["verdict"] = {"sentences": domain_answers.verdict(document)}
+        return document
+
+    def _candidate(self, place: int) -> Json:
+        held, facts = self._audit["vocabularies"][place], self._facts[place]
+        whole = held["slices"][ALL]
+        histogram = LengthHistogram.of(whole["lengths"]["histogram"])
+        figures, limit = whole["figures"], facts.limit.value
+        width, shape = self._wishes.width, self._wishes.shape
+        words = tables.saved_at_most(self._tallies.contents[place].words)
+        remedies = fit.remedies(
+            figures, whole["counts"]["tokens"], histogram, limit, words, self._form(place)
+        )
+        return {
+            **{name: own for name, own in held.items() if name != "slices"},
+            "counts": whole["counts"],
+            "figures": figures,
+            "lengths": {n: own for n, own in whole["lengths"].items() if n != "histogram"},
+            "usage": whole["usage"],
+            "lost_characters": self._lost(place).as_json(),
+            "paired": self._paired(place),
+            "price": fit.price(facts.entries, limit, histogram, width, shape),
+            "halves": self._halves(held["slices"]),
+            "remedies": remedies,
+        }
+
+    def _form(self, place: int) -> dict[str, int]:
+        rows = dict(self._own.forms[place].rows(ALL))
+        return rows.get(NOT_NFC, {"documents": 0, "tokens": 0, "tokens_as_nfc": 0})
+
+    def _lost(self, place: int) -> sidebyside.Value:
+        return sidebyside.lost_share(self._own.side, ALL, place)
+
+    def _paired(self, place: int) -> list[Json]:
+        """Return the tokens and losses over those of each other candidate, paired by document."""
+        side = self._own.side
+        return [
+            {
+                "other": own.name,
+                "tokens_ratio": sidebyside.tokens_ratio(side, ALL, place, other).as_json(),
+                "loss_difference": sidebyside.loss_difference(side, ALL, place, other).as_json(),
+            }
+            for other, own in enumerate(self._facts)
+            if other != place
+        ]
+
+    def _halves(self, slices: Json) -> Json:
+        """Return each figure in both halves of the corpus, whichever of them hold a document."""
+        halves = [slices.get(f"{HALF}={half}") for half in (1, 2)]
+        return {
+            "documents": [0 if h is None else h["counts"]["documents"] for h in halves],
+            "figures": {
+                name: [None if h is None else h["figures"][name]["value"] for h in halves]
+                for name in slices[ALL]["figures"]
+                if all(h is None or name in h["figures"] for h in halves)
+            },
+        }
+
+    def _penalty(self) -> list[Json]:
+        if self._general is None:
+            return []
+        return [
+            row
+            for held, limit, slices in zip(
+                self._audit["vocabularies"],
+                self._general.limits,
+                self._general.slices,
+                strict=True,
+            )
+            for row in yardstick.penalty(held, slices, limit)
+        ]
+
+    def _ranking(self, candidates: list[Json]) -> Json:
+        def by_name(*path: str) -> dict[str, Any]:
+            found = {}
+            for own in candidates:
+                value: Any = own
+                for key in path:
+                    value = value[key]
+                found[own["name"]] = value
+            return found
+
+        short = ranking.shortfalls(
+            by_name("counts", "tokens"),
+            {name: share or 0.0 for name, share in by_name("lost_characters", "value").items()},
+            {},
+            by_name("entries"),
+        )
+        return ranking.rank(short, self._wishes.weights)

@@ -1,0 +1,96 @@
+"""One process's share of vetting vocabularies for a domain: an audit's own, and more beside."""
+
+from __future__ import annotations
+
+from dataclasses import dataclass, field, replace
+
+import numpy as np
+
+from auditor.corpus import Batch
+from auditor.encoding.composed import COLUMNS as FORM_COLUMNS
+from auditor.encoding.composed import not_composed
+from auditor.figures import sidebyside
+from auditor.runs.measuring import Finished, Measurer, Outcome
+from auditor.runs.plan import Plan
+from auditor.runs.tallied import CorpusTallies, DocumentTallies
+from auditor.tallies.groups import groupings
+from auditor.tallies.moments import MomentsTally
+from auditor.tallies.rows import RowsTally
+from auditor.text.halves import halves_of
+from auditor.vocabulary import VocabularyFacts
+
+# A field that no record has: which half of the corpus a document belongs to.
+HALF = "\0half"
+NOT_NFC = "not in NFC"
+_LOST = ("unknown_characters", "dropped_characters")
+
+
+@dataclass
+class DomainTallies:
+    """What vetting needs beside an audit's own tallies; ``forms`` has one item a vocabulary."""
+
+    side: MomentsTally
+    forms: list[RowsTally] = field(default_factory=list)
+
+    @classmethod
+    def empty(cls, vocabularies: int) -> DomainTallies:
+        """Return empty tallies for so many vocabularies."""
+        side = MomentsTally(sidebyside.columns(vocabularies), sidebyside.pairs(vocabularies))
+        return cls(side, [RowsTally(FORM_COLUMNS) for _ in range(vocabularies)])
+
+    def merge(self, other: DomainTallies) -> None:
+        """Add the counts of ``other``."""
+        self.side.merge(other.side)
+        for ours, theirs in zip(self.forms, other.forms, strict=True):
+            ours.merge(theirs)
+
+
+@dataclass
+class DomainOutcome:
+    """What a batch comes to; texts stay where they were measured."""
+
+    documents: int
+    corpus: CorpusTallies
+    audit: list[DocumentTallies]
+    own: DomainTallies
+
+
+class DomainMeasurer:
+    """Measures batches as an audit does, and what vetting needs beside."""
+
+    def __init__(self, plan: Plan) -> None:
+        self._plan = plan
+        self._audit = Measurer(plan, kept=("tokens", *_LOST))
+
+    @property
+    def facts(self) -> list[VocabularyFacts]:
+        """The facts of the vocabularies that are measured with."""
+        return self._audit.facts
+
+    def finish(self) -> Finished:
+        """Return what an audit hands over once all batches are measured."""
+        return self._audit.finish()
+
+    def measure(self, batch: Batch, source_number: int) -> DomainOutcome:
+        """Return the outcome of ``batch``; a document that an engine fails on is set aside."""
+        halves = [f"{HALF}={half}" for half in halves_of(batch.texts)]
+        halved = replace(batch, slices={**batch.slices, HALF: halves})
+        outcome = self._audit.measure(halved, source_number)
+        own = DomainTallies.empty(len(self.facts))
+        if outcome.batch.texts:
+            self._add(own, outcome)
+        return DomainOutcome(len(batch), outcome.corpus, outcome.documents, own)
+
+    def _add(self, own: DomainTallies, outcome: Outcome) -> None:
+        texts = outcome.batch.texts
+        groups = groupings(len(texts), {})
+        columns = {name: outcome.text_rows[name] for name in ("documents", sidebyside.INK)}
+        for place, row in enumerate(outcome.rows):
+            columns[sidebyside.tokens_of(place)] = row["tokens"]
+            columns[sidebyside.lost_of(place)] = np.sum([row[name] for name in _LOST], axis=0)
+        own.side.add(columns, groups)
+        for place, vocabulary in enumerate(self._audit.vocabularies):
+            tokens = outcome.rows[place]["tokens"]
+            documents, forms = not_composed(vocabulary.engine, texts, tokens)
+            if len(documents):
+                own.forms[place].add(documents, 0 * documents, [NOT_NFC], forms, groups)
