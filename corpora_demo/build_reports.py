@@ -21,8 +21,9 @@ import orjson
 from auditor.corpus import ReadOptions
 from auditor.planning.model import parse_model
 from auditor.planning.plan import Wishes
-from auditor.report import language_page, page, plan_page
+from auditor.report import domain_page, language_page, page, plan_page
 from auditor.runs.auditing import assess
+from auditor.runs.domain import DomainWishes, vet_domain
 from auditor.runs.languages import compare_languages
 from auditor.runs.lengths import plan_from_corpus
 from auditor.runs.plan import Plan
@@ -52,8 +53,9 @@ PLANS = {
 
 LENGTH_PLAN = "inspection-notes--length-plan"
 LANGUAGES = "safety-notices--languages"
+DOMAIN = "inspection-notes--domain"
 # The document that each kind of page is rendered from.
-HELD = {LENGTH_PLAN: "plan.json", LANGUAGES: "languages.json"}
+HELD = {LENGTH_PLAN: "plan.json", LANGUAGES: "languages.json", DOMAIN: "domain.json"}
 MODEL = "layers=4,width=256,heads=4,inner=1024"
 
 Render = Callable[[dict[str, Any]], str]
@@ -77,6 +79,13 @@ def build(folder: Path) -> dict[str, Render]:
     compared = replace(notices, read=reading, graphemes=True)
     compare_languages(compared, ("en",), folder / LANGUAGES, overwrite=True)
     pages[LANGUAGES] = language_page.render
+    candidates = plan(
+        "inspection_notes.jsonl", "harbour-bytelevel", "harbour-wordpiece", "harbour-unigram",
+        "harbour-sentencepiece", by=(),
+    )  # fmt: skip
+    against = DomainWishes(general=(f"{DEMO}/everyday.txt",), shape=parse_model(MODEL))
+    vetted = vet_domain(candidates, against, folder / DOMAIN, overwrite=True)
+    pages[DOMAIN] = partial(domain_page.render, worst=vetted.worst_words)
     return pages
 
 

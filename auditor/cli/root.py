@@ -13,6 +13,7 @@ from auditor.errors import AuditError
 # Name → module; the module holds a click command called `command`.
 _COMMANDS = {
     "assess": "auditor.cli.assess",
+    "domain": "auditor.cli.domain",
     "languages": "auditor.cli.languages",
     "plan-length": "auditor.cli.plan_length",
 }

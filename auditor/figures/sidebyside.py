@@ -8,6 +8,7 @@ from auditor.tallies.moments import HoldsMoments, Moments
 
 INK = "ink_characters"
 ONE = "one document: no interval"
+NO_INK = "no characters but whitespace"
 
 
 def tokens_of(place: int) -> str:
@@ -52,16 +53,27 @@ def tokens_ratio(tally: HoldsMoments, key: str, ours: int, theirs: int) -> Value
     return Value(moments.y / moments.x, low, high, moments.y, moments.x, note)
 
 
+def lost_share(tally: HoldsMoments, key: str, place: int) -> Value:
+    """Return the share of characters lost: unknown or dropped, of those that are not whitespace."""
+    moments = tally.moments(key, lost_of(place), INK)
+    if not moments.x:
+        return undefined(NO_INK)
+    low, high = ratio_interval(moments, share=True)
+    return Value(
+        moments.y / moments.x, low, high, moments.y, moments.x, ONE if low is None else None
+    )
+
+
 def loss_difference(tally: HoldsMoments, key: str, ours: int, theirs: int) -> Value:
     """Return the share of characters lost under ``ours`` less that under ``theirs``, paired.
 
-    Lost are characters unknown or dropped, of those that are not whitespace. The difference of each
-    document is the numerator of a ratio estimator, since both shares have one denominator.
+    The difference of each document is the numerator of a ratio estimator, since both shares have
+    one denominator.
     """
     a, b = lost_of(ours), lost_of(theirs)
     own, other = (tally.moments(key, name, INK) for name in (a, b))
     if not own.x:
-        return undefined("no characters but whitespace")
+        return undefined(NO_INK)
     squares = own.yy + other.yy - 2 * tally.moments(key, a, b).xy
     y = own.y - other.y
     low, high = ratio_interval(Moments(own.units, y, own.x, squares, own.xx, own.xy - other.xy))

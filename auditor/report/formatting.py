@@ -142,5 +142,8 @@ def figure(held: Json, digits: int = 3) -> str:
 
 
 def number(value: float, digits: int = 3) -> str:
-    """Return a number with so many digits, never with a power of ten."""
-    return f"{value:,.0f}" if abs(value) >= 10**digits else f"{value:.{digits}g}"
+    """Return a number with so many digits, more before the point, never with a power of ten."""
+    if abs(value) >= 10 ** (digits - 1):
+        return f"{value:,.0f}"
+    shown = f"{value:#.{digits}g}".rstrip(".")
+    return shown if "e" not in shown else f"{value:.1e}"

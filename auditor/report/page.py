@@ -43,7 +43,7 @@ def render(audit: Json, worst: WorstWords) -> str:
     return template.render(
         audit=audit,
         slice_sets=[_set(number, audit, *found) for number, found in enumerate(sets(audit))],
-        word_tables=[table for name, rows in worst for table in _word_tables(name, rows)],
+        word_tables=[table for name, rows in worst for table in word_tables(name, rows)],
         anything_cut=any(map(anything_cut, audit["vocabularies"])),
         command=command(audit),
         command_notes=command_notes(audit),
@@ -181,7 +181,7 @@ def _columns(vocabularies: Sequence[Json], keys: Sequence[str]) -> tuple[list[st
     return columns, notes
 
 
-def _word_tables(name: str, rows: list[tuple[BrokenWord, int]]) -> list[Json]:
+def word_tables(name: str, rows: list[tuple[BrokenWord, int]]) -> list[Json]:
     """Return the table of the costliest words, then that of the words lost most often."""
     lost = sorted((item for item in rows if item[0].unknown), key=lambda item: (-item[1], item[0]))
     wanted = (

@@ -7,6 +7,7 @@ import shlex
 from collections.abc import Iterator, Mapping
 from typing import Any
 
+from auditor.planning.ranking import USUAL
 from auditor.report.formatting import count, plural
 
 Json = Mapping[str, Any]
@@ -15,6 +16,7 @@ Block = tuple[str, list[tuple[str, str]]]
 _SOURCES = 10
 _OPTIONS = (("origin", None), ("unit", "record"), ("words", "icu"), ("control_strings", "parse"),
             ("limit", None), ("encoding", None))  # fmt: skip
+_USUAL_WEIGHTS = {name: weight for name, weight in USUAL.items() if weight}
 _FLAGS = ("graphemes", "repeats")
 
 
@@ -60,9 +62,7 @@ def _plan_options(settings: Json) -> Iterator[str]:
         if settings[name] != value:
             yield from (f"--{name.replace('_', '-')}", str(settings[name]))
     if settings["model"]:
-        shape = {name: value for name, value in settings["model"].items() if value is not None}
-        spelled = {name: _spelled(value) for name, value in shape.items()}
-        yield from ("--model", ",".join(f"{name}={value}" for name, value in spelled.items()))
+        yield from ("--model", _shape(settings["model"]))
         yield from ("--precision", settings["precision"])
 
 
@@ -83,6 +83,32 @@ def languages_command(document: Json) -> str:
         words += ["--reference", reference]
     usual = {**settings, "graphemes": False}  # this command counts them always
     return shlex.join([*words, *_options(usual)])
+
+
+def domain_command(document: Json) -> str:
+    """Return the command line that makes this vetting, quoted for a POSIX shell."""
+    sources, settings = document["corpus"]["sources"], document["settings"]
+    named = sources[:_SOURCES] if len(sources) <= _SOURCES else ["CORPUS"]
+    words = ["auditor", "domain", *named]
+    for candidate in document["candidates"]:
+        words += ["--vocab", candidate["source"]]
+    for general in settings["general"]:
+        words += ["--general", general]
+    if settings["general_text"]:
+        words += ["--general-text", ",".join(settings["general_text"])]
+    weights = {name: weight for name, weight in settings["weights"].items() if weight}
+    if weights != _USUAL_WEIGHTS:
+        words += ["--weigh", ",".join(f"{name}={weight:g}" for name, weight in weights.items())]
+    if settings["width"]:
+        words += ["--width", str(settings["width"])]
+    if settings["model"]:
+        words += ["--model", _shape(settings["model"])]
+    return shlex.join([*words, *_options(settings)])
+
+
+def _shape(model: Json) -> str:
+    shape = {name: value for name, value in model.items() if value is not None}
+    return ",".join(f"{name}={_spelled(value)}" for name, value in shape.items())
 
 
 def plan_facts(plan: Json) -> list[tuple[str, str]]:

@@ -87,6 +87,16 @@ def worst_words(tally: WordsTally) -> list[tuple[BrokenWord, int]]:
     return [*costly, *islice(lost, WORST)]
 
 
+def saved_at_most(tally: WordsTally, entries: int = WORST) -> tuple[int, int]:
+    """Return how many broken words were taken, costliest first, and their extra tokens together.
+
+    That is at most what is saved were each of them an entry; at most ``entries`` words are taken. A
+    word that is broken in several ways takes one place for each.
+    """
+    costly = [item for item in tally.largest(entries, _costs) if _extra(*item)]
+    return len({row.word for row, _ in costly}), sum(_extra(*item) for item in costly)
+
+
 def _costs(rows: pa.Table) -> npt.NDArray[np.int64]:
     return np.asarray(np.asarray(rows["count"]) * (np.asarray(rows["pieces"]) - 1))
 

@@ -102,14 +102,15 @@ def _audited(
                 "conversations": reading.conversations,
             }
             audit = assemble(plan, facts, tallies, reading.names, settings)
-            worst = _worst_words(plan, facts, tallies)
+            worst = worst_words(plan, facts, tallies)
             _write(output, audit, worst, facts, tallies, reading.names)
             run = _run(plan, tale, fault, workers, reading.total, began)
             output.write("run.json", contract.dump(run))
             return Written(audit, worst, folder, output.finish())
 
 
-def _worst_words(plan: Plan, facts: list[VocabularyFacts], tallies: AuditTallies) -> WorstWords:
+def worst_words(plan: Plan, facts: list[VocabularyFacts], tallies: AuditTallies) -> WorstWords:
+    """Return the costliest words of each vocabulary; none where excerpts are not wanted."""
     if not plan.excerpts:
         return []
     pairs = zip(facts, tallies.contents, strict=True)

@@ -3,7 +3,7 @@
 from __future__ import annotations
 
 from collections.abc import Callable
-from dataclasses import dataclass, field, replace
+from dataclasses import asdict, dataclass, field, replace
 from functools import partial
 from pathlib import Path
 from typing import Any
@@ -12,14 +12,15 @@ from auditor.corpus import find_sources, resolve_fields
 from auditor.encoding.documents import SeparationError
 from auditor.errors import SettingsError
 from auditor.figures import sidebyside
+from auditor.figures.values import Value
 from auditor.planning import fit, ranking
 from auditor.planning.histogram import LengthHistogram
 from auditor.planning.model import ModelShape
 from auditor.report import contract, domain_answers, domain_page, domain_tables, tables
 from auditor.runs import yardstick
 from auditor.runs.assembling import assemble
-from auditor.runs.audits import audit_at
 from auditor.runs.auditing import WorstWords, worst_words
+from auditor.runs.audits import audit_at
 from auditor.runs.measuring import Finished, empty_tallies
 from auditor.runs.output import DOMAIN_FILES, OutputFolder
 from auditor.runs.plan import Plan
@@ -64,6 +65,7 @@ class WrittenDomain:
     """A finished vetting: the document of `domain.json` and the files that were written."""
 
     document: Json
+    worst_words: WorstWords
     folder: Path
     files: list[Path]
 
@@ -116,7 +118,7 @@ def _vetted(
             worst = worst_words(plan, facts, tallies)
             document = _Vetting(plan, wishes, reading, facts, tallies, own, general).document()
             _write(output, document, worst)
-            return WrittenDomain(document, folder, output.finish())
+            return WrittenDomain(document, worst, folder, output.finish())
 
 
 def _measured(
@@ -160,9 +162,10 @@ class _Vetting:
             "fields": reading.fields.as_json(),
             "conversations": reading.conversations,
             "general": list(wishes.general),
+            "general_text": list(wishes.general_text or ()),
             "weights": wishes.weights,
             "width": wishes.width,
-            "model": None if wishes.shape is None else wishes.shape.as_json(),
+            "model": None if wishes.shape is None else asdict(wishes.shape),
         }
         self._audit = assemble(plan, facts, tallies, reading.names, settings)
         self._wishes, self._facts = wishes, facts
@@ -183,7 +186,7 @@ class _Vetting:
             "penalty": self._penalty(),
             "ranking": self._ranking(candidates),
         }
-        document["verdict"] = {"sentences": domain_answers.verdict(document)}
+        document["verdict"] = domain_answers.verdict(document)
         return document
 
     def _candidate(self, place: int) -> Json:
@@ -213,7 +216,7 @@ class _Vetting:
         rows = dict(self._own.forms[place].rows(ALL))
         return rows.get(NOT_NFC, {"documents": 0, "tokens": 0, "tokens_as_nfc": 0})
 
-    def _lost(self, place: int) -> sidebyside.Value:
+    def _lost(self, place: int) -> Value:
         return sidebyside.lost_share(self._own.side, ALL, place)
 
     def _paired(self, place: int) -> list[Json]:

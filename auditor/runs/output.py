@@ -27,6 +27,9 @@ PLAN_FILES = frozenset({"plan.json", "plan.csv", "report.html"})
 LANGUAGE_FILES = frozenset(
     {"languages.json", "languages.csv", "scripts.csv", "doubtful_labels.jsonl", "report.html"}
 )
+DOMAIN_FILES = frozenset(
+    {"domain.json", "candidates.csv", "penalty.csv", "words.csv", "report.html"}
+)
 
 
 class OutputFolder:

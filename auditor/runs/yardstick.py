@@ -7,8 +7,8 @@ from dataclasses import dataclass, replace
 from functools import partial
 from typing import Any
 
-from auditor.corpus import find_sources, resolve_fields
-from auditor.errors import SettingsError
+from auditor.corpus import Fields, Source, find_sources, resolve_fields
+from auditor.errors import CorpusError, SettingsError
 from auditor.figures import independent
 from auditor.figures.values import undefined
 from auditor.runs.assembling import assemble
@@ -41,7 +41,7 @@ class Yardstick:
 def measured(plan: Plan, progress: Callable[[Progress], None] | None) -> Yardstick:
     """Measure the general text that ``plan`` names."""
     sources = find_sources(plan.corpus)
-    fields = resolve_fields(sources, plan.read)
+    plan, fields = _with_fields(plan, sources)
     plan, how = with_conversations(plan, fields)
     reading = Reading(sources, fields, how, progress)
     workers = choose_workers(plan.workers, reading.total)
@@ -56,6 +56,15 @@ def measured(plan: Plan, progress: Callable[[Progress], None] | None) -> Yardsti
         settings: Json = {"fields": fields.as_json(), "conversations": how}
         audit = assemble(plan, facts, tallies, reading.names, settings)
     return _of(audit, audit["vocabularies"], "corpus")
+
+
+def _with_fields(plan: Plan, sources: list[Source]) -> tuple[Plan, Fields]:
+    """Return the plan by slices where the general text has these fields, else without slices."""
+    try:
+        return plan, resolve_fields(sources, plan.read)
+    except CorpusError:
+        whole = replace(plan, read=replace(plan.read, by=()))
+        return whole, resolve_fields(sources, whole.read)
 
 
 def from_audit(audit: Audit, plan: Plan, facts: list[VocabularyFacts]) -> Yardstick:

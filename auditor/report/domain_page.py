@@ -1,0 +1,92 @@
+"""The page of a vetting: one file of HTML without scripts or outside parts."""
+
+from __future__ import annotations
+
+from collections.abc import Mapping
+from functools import cache
+from typing import Any
+
+from jinja2 import Environment
+from markupsafe import Markup
+
+from auditor.report import domain_answers, language_charts, repeating
+from auditor.report.formatting import FIGURES, figure, number, plain_name, proportion, value
+from auditor.report.page import WorstWords, environment, word_tables
+
+Json = Mapping[str, Any]
+
+# Figures whose ratio is drawn: what a token costs, and what is broken.
+_DRAWN = ("fertility", "pieces_per_word", "continued_words", "bytes_per_token")
+
+
+def render(document: Json, worst: WorstWords) -> str:
+    """Return the page for a `domain.json` document and the costliest words of each vocabulary."""
+    return (
+        _environment()
+        .get_template("domain.html.jinja")
+        .render(
+            document=document,
+            candidates=domain_answers.ordered(document),
+            penalties=_penalties(document),
+            drawings=[_drawing(n, name, document) for n, name in enumerate(_DRAWN)]
+            if document["general"]
+            else [],
+            word_tables=[table for name, rows in worst for table in word_tables(name, rows)],
+            command=repeating.domain_command(document),
+            command_notes=repeating.command_notes({**document, "vocabularies": []}),
+            blocks=repeating.blocks({**document, "vocabularies": document["candidates"]}),
+        )
+    )
+
+
+@cache
+def _environment() -> Environment:
+    made = environment().overlay()
+    made.filters |= {
+        "proportion": proportion,
+        "figure": figure,
+        "number": number,
+        "plain": plain_name,
+        "shared": domain_answers.shared,
+        "remedy": domain_answers.remedy,
+    }
+    made.globals |= {
+        "not_quality": domain_answers.NOT_QUALITY,
+        "no_general": domain_answers.NO_GENERAL,
+        "paired": domain_answers.PAIRED,
+        "weights_mean": domain_answers.WEIGHTS,
+        "headings": domain_answers.HEADINGS,
+        "drawn": _DRAWN,
+        "value_of": value,
+        "known": FIGURES,
+    }
+    return made
+
+
+def _penalties(document: Json) -> dict[str, list[Json]]:
+    """Return the rows over the whole domain by figure, the vocabularies in ranking order.
+
+    Figures that are 0 or undefined for all, on both sides, are left out.
+    """
+    order = [own["name"] for own in domain_answers.ordered(document)]
+    found: dict[str, list[Json]] = {}
+    for name in order:
+        for row in document["penalty"]:
+            if row["slice"] == "all" and row["vocabulary"] == name:
+                found.setdefault(row["figure"], []).append(row)
+    return {
+        name: rows
+        for name, rows in found.items()
+        if any(row[side]["value"] for row in rows for side in ("domain", "general"))
+    }
+
+
+def _drawing(place: int, name: str, document: Json) -> Markup:
+    rows = [
+        (own["name"], row["ratio"])
+        for own in domain_answers.ordered(document)
+        if (row := domain_answers.penalty_of(document, own["name"], name)) is not None
+    ]
+    return language_charts.points(
+        f"penalty-{place}", f"{plain_name(name)}: domain over general text", rows, 1.0
+    )

@@ -1,0 +1,53 @@
+"""The tables beside `domain.json`, as data frames."""
+
+from __future__ import annotations
+
+from collections.abc import Iterator
+from typing import Any
+
+import pandas as pd
+
+from auditor.report.tables import frame
+
+Json = dict[str, Any]
+
+_VALUES = ("value", "low", "high", "numerator", "denominator", "note")
+CANDIDATE_COLUMNS = ("vocabulary", "other", "figure", *_VALUES)
+PENALTY_COLUMNS = (
+    "vocabulary", "slice", "figure", "domain", "domain_low", "domain_high", "general",
+    "general_low", "general_high", "ratio", "ratio_low", "ratio_high", "note",
+)  # fmt: skip
+_ENDS = ("value", "low", "high")
+
+
+def candidates(document: Json) -> pd.DataFrame:
+    """Return one row a vocabulary and figure; paired ones name the other vocabulary."""
+    rows = (row for own in document["candidates"] for row in _candidate(own))
+    return frame(CANDIDATE_COLUMNS, rows)
+
+
+def _candidate(own: Json) -> Iterator[tuple[object, ...]]:
+    def row(other: str | None, name: str, held: Json) -> tuple[object, ...]:
+        return (own["name"], other, name, *(held[column] for column in _VALUES))
+
+    for name, held in own["figures"].items():
+        yield row(None, name, held)
+    yield row(None, "lost_characters", own["lost_characters"])
+    for pair in own["paired"]:
+        for name in ("tokens_ratio", "loss_difference"):
+            yield row(pair["other"], name, pair[name])
+    for name, value in own["price"].items():
+        yield (own["name"], None, name, value, *[None] * 5)
+
+
+def penalty(document: Json) -> pd.DataFrame:
+    """Return one row a vocabulary, slice and figure; none without a general text."""
+    rows = (
+        (
+            row["vocabulary"], row["slice"], row["figure"],
+            *(row[side][end] for side in ("domain", "general", "ratio") for end in _ENDS),
+            row["ratio"]["note"],
+        )
+        for row in document["penalty"]
+    )  # fmt: skip
+    return frame(PENALTY_COLUMNS, rows)
