@@ -4,12 +4,13 @@ from auditor.corpus.batch import Batch, Flaw
 from auditor.corpus.fields import Fields, resolve_fields
 from auditor.corpus.options import ReadOptions
 from auditor.corpus.reading import read
-from auditor.corpus.sources import Source, find_sources
+from auditor.corpus.sources import Named, Source, find_sources
 
 __all__ = [
     "Batch",
     "Fields",
     "Flaw",
+    "Named",
     "ReadOptions",
     "Source",
     "find_sources",

@@ -8,6 +8,7 @@ import os
 import stat
 from collections.abc import Iterator, Sequence
 from contextlib import contextmanager
+from dataclasses import dataclass
 from pathlib import Path
 from typing import BinaryIO
 
@@ -21,16 +22,26 @@ _DESCRIPTIONS = {"state.json", "dataset_info.json", "dataset_dict.json"}
 _STANDARD_INPUT = "standard input"
 
 
+@dataclass(frozen=True, slots=True)
+class Named:
+    """A file that is called by a name of its own wherever it is spoken of."""
+
+    path: Path
+    name: str
+
+
 class Source:
     """One file, or a pipe.
 
-    ``name`` is what the user wrote or what was found below it, ``size`` its bytes on the disk
-    (``None`` for a pipe).
+    ``name`` is the one that was given, else what the user wrote or what was found below it;
+    ``size`` its bytes on the disk (``None`` for a pipe).
     """
 
-    def __init__(self, path: Path | None, pipe: Pipe | None = None) -> None:
+    def __init__(
+        self, path: Path | None, pipe: Pipe | None = None, name: str | None = None
+    ) -> None:
         self.path = path
-        self.name = _STANDARD_INPUT if path is None else _readable(path)
+        self.name = name or (_STANDARD_INPUT if path is None else _readable(path))
         self.size = None if path is None or pipe is not None else path.stat().st_size
         self._pipe = pipe
         self._looked: dict[str | None, tuple[Compression | None, formats.Format | None]] = {}
@@ -82,7 +93,7 @@ class Source:
         return self._looked[encoding]
 
 
-def find_sources(arguments: Sequence[str]) -> list[Source]:
+def find_sources(arguments: Sequence[str | Named]) -> list[Source]:
     """Return the sources that ``arguments`` name, in their order, each file once.
 
     An argument is a file, a folder, a glob (``**`` goes into folders) or ``-`` for standard input.
@@ -94,6 +105,9 @@ def find_sources(arguments: Sequence[str]) -> list[Source]:
     found: list[Source] = []
     seen: set[str] = set()
     for argument in arguments:
+        if isinstance(argument, Named):
+            found.append(Source(argument.path, name=argument.name))
+            continue
         if argument == "-":
             paths: list[Path | None] = [None]
         else:

@@ -8,6 +8,7 @@ these shares, each times its weight, so that weights are rates of exchange: with
 
 from __future__ import annotations
 
+import math
 from collections.abc import Iterator, Mapping
 from fractions import Fraction
 from itertools import combinations, pairwise
@@ -43,11 +44,19 @@ def parse_weights(text: str) -> dict[str, float]:
             found[name] = float(Fraction(weight))
         except (ValueError, ZeroDivisionError):
             raise _refused(f"{weight!r} is no weight for {name}.") from None
-        if found[name] < 0:
-            raise _refused(f"the weight of {name} is below 0.")
+    return weights_of(found)
+
+
+def weights_of(found: Mapping[str, float]) -> dict[str, float]:
+    """Return the weight of every criterion; SettingsError as `parse_weights` raises it."""
+    for name, weight in found.items():
+        if name not in CRITERIA:
+            raise _refused(f"{name!r} is nothing that can be weighed.")
+        if not 0 <= weight < math.inf:
+            raise _refused(f"the weight of {name} is not at least 0.")
     if not any(found.values()):
         raise _refused("nothing is weighed.")
-    return {name: found.get(name, 0.0) for name in CRITERIA}
+    return {name: float(found.get(name, 0.0)) for name in CRITERIA}
 
 
 def _refused(message: str) -> SettingsError:

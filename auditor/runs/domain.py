@@ -8,7 +8,7 @@ from functools import partial
 from pathlib import Path
 from typing import Any
 
-from auditor.corpus import find_sources, resolve_fields
+from auditor.corpus import Named, find_sources, resolve_fields
 from auditor.encoding.documents import SeparationError
 from auditor.errors import SettingsError
 from auditor.figures import sidebyside
@@ -20,7 +20,7 @@ from auditor.report import contract, domain_answers, domain_page, domain_tables,
 from auditor.runs import yardstick
 from auditor.runs.assembling import assemble
 from auditor.runs.auditing import WorstWords, worst_words
-from auditor.runs.audits import audit_at
+from auditor.runs.audits import Audit, audit_at
 from auditor.runs.measuring import Finished, empty_tallies
 from auditor.runs.output import DOMAIN_FILES, OutputFolder
 from auditor.runs.plan import Plan
@@ -53,7 +53,7 @@ class DomainWishes:
     say what model pays.
     """
 
-    general: tuple[str, ...] = ()
+    general: tuple[str | Named | Audit, ...] = ()
     general_text: tuple[str, ...] | None = None
     weights: dict[str, float] = field(default_factory=lambda: dict(ranking.USUAL))
     width: int | None = None
@@ -104,7 +104,7 @@ def _vetted(
     plan, how = with_conversations(plan, fields)
     reading = Reading(sources, fields, how, progress)
     workers = choose_workers(plan.workers, reading.total)
-    audit = audit_at(wishes.general[0]) if len(wishes.general) == 1 else None
+    audit, texts = _split(wishes.general)
     with Processes(partial(DomainMeasurer, plan), workers) as processes:
         facts = named_apart(processes.facts)
         general = None if audit is None else yardstick.from_audit(audit, plan, facts)
@@ -112,13 +112,29 @@ def _vetted(
         folder = out or Path("reports") / f"{named}--domain"
         with OutputFolder(folder, overwrite=overwrite, files=DOMAIN_FILES) as output:
             tallies, own = _measured(plan, facts, processes, reading)
-            if wishes.general and general is None:
-                other = yardstick.general_plan(plan, wishes.general, wishes.general_text)
+            if texts:
+                other = yardstick.general_plan(plan, texts, wishes.general_text)
                 general = yardstick.measured(other, progress)
             worst = worst_words(plan, facts, tallies)
             document = _Vetting(plan, wishes, reading, facts, tallies, own, general).document()
             _write(output, document, worst)
             return WrittenDomain(document, worst, folder, output.finish())
+
+
+def _split(
+    general: tuple[str | Named | Audit, ...],
+) -> tuple[Audit | None, tuple[str | Named, ...]]:
+    """Return the one audit that is named, or the texts to measure."""
+    texts = tuple(own for own in general if not isinstance(own, Audit))
+    audits: list[Audit] = [own for own in general if isinstance(own, Audit)]
+    if not audits and len(texts) == 1 and isinstance(texts[0], str):
+        found = audit_at(texts[0])
+        return (None, texts) if found is None else (found, ())
+    if audits and len(general) > 1:
+        raise SettingsError(
+            "the general text is either one audit or texts to measure.", where="--general"
+        )
+    return (audits[0] if audits else None), texts
 
 
 def _measured(
@@ -145,6 +161,12 @@ def _write(output: OutputFolder, document: Json, worst: WorstWords) -> None:
     output.write("report.html", domain_page.render(document, worst))
 
 
+def _called(general: str | Named | Audit) -> str:
+    if isinstance(general, Audit):
+        return str(general.path)
+    return general.name if isinstance(general, Named) else general
+
+
 class _Vetting:
     """Lays the document of `domain.json` out from the tallies of a finished run."""
 
@@ -161,7 +183,7 @@ class _Vetting:
         settings: Json = {
             "fields": reading.fields.as_json(),
             "conversations": reading.conversations,
-            "general": list(wishes.general),
+            "general": [_called(own) for own in wishes.general],
             "general_text": list(wishes.general_text or ()),
             "weights": wishes.weights,
             "width": wishes.width,

@@ -5,7 +5,7 @@ from __future__ import annotations
 from dataclasses import dataclass, field
 from typing import Any
 
-from auditor.corpus import ReadOptions
+from auditor.corpus import Named, ReadOptions
 from auditor.vocabulary import VocabularySpec
 
 
@@ -18,7 +18,7 @@ class Plan:
     encodes every document whole, which changes none either.
     """
 
-    corpus: tuple[str, ...]
+    corpus: tuple[str | Named, ...]
     vocabularies: tuple[VocabularySpec, ...]
     read: ReadOptions = field(default_factory=ReadOptions)
     words: str = "icu"

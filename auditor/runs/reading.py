@@ -6,7 +6,7 @@ from collections.abc import Callable, Iterator, Sequence
 from dataclasses import dataclass, replace
 from pathlib import Path
 
-from auditor.corpus import Batch, Fields, Source, read
+from auditor.corpus import Batch, Fields, Named, Source, read
 from auditor.errors import CorpusError, SettingsError
 from auditor.runs.plan import Plan
 from auditor.tallies.corpus import FlawsTally
@@ -80,7 +80,8 @@ def batches(plan: Plan, reading: Reading) -> Iterator[tuple[Batch, int]]:
 
 def default_name(plan: Plan, names: Sequence[str]) -> str:
     """Return the name of the folder for ``plan`` and vocabularies: <corpus>--<vocabulary>."""
-    first = plan.corpus[0]
+    head = plan.corpus[0]
+    first = head.name if isinstance(head, Named) else head
     corpus = "stdin" if first == "-" else Path(first.rstrip("/*?")).name.split(".")[0] or "corpus"
     more = f"-and-{len(plan.corpus) - 1}-more" if len(plan.corpus) > 1 else ""
     vocabulary = names[0] if len(names) == 1 else f"{names[0]}-and-{len(names) - 1}-more"

@@ -7,7 +7,7 @@ from dataclasses import dataclass, replace
 from functools import partial
 from typing import Any
 
-from auditor.corpus import Fields, Source, find_sources, resolve_fields
+from auditor.corpus import Fields, Named, Source, find_sources, resolve_fields
 from auditor.errors import CorpusError, SettingsError
 from auditor.figures import independent
 from auditor.figures.values import undefined
@@ -113,7 +113,7 @@ def _of(document: Json, vocabularies: list[Json], measured_from: str) -> Yardsti
     )
 
 
-def general_plan(plan: Plan, corpus: tuple[str, ...], text: tuple[str, ...] | None) -> Plan:
+def general_plan(plan: Plan, corpus: tuple[str | Named, ...], text: tuple[str, ...] | None) -> Plan:
     """Return the plan that measures ``corpus`` as the domain is measured.
 
     ``text`` names its own text fields; ``None``: those of the domain.

@@ -96,7 +96,7 @@ def test_turning_points_are_where_two_draw_level(found, weights):
         ("", "'' is nothing that can be weighed."),
         ("tokens", "'' is no weight for tokens."),
         ("tokens=x", "'x' is no weight for tokens."),
-        ("tokens=-1", "the weight of tokens is below 0."),
+        ("tokens=-1", "the weight of tokens is not at least 0."),
         ("tokens=1,tokens=2", "tokens is weighed twice."),
         ("tokens=0", "nothing is weighed."),
     ],

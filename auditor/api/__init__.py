@@ -1,0 +1,1 @@
+"""The public functions of the package, and what they return."""
