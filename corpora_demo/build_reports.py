@@ -66,7 +66,7 @@ def build(folder: Path) -> dict[str, Render]:
     pages: dict[str, Render] = {}
     for name, sample in PLANS.items():
         done = assess(sample, folder / name, overwrite=True)
-        pages[name] = partial(page.render, worst=done.worst_words)
+        pages[name] = partial(page.render, worst=done.worst_words, details=done.details)
         for path in done.files:
             if path.name in LEFT_OUT:
                 path.unlink()

@@ -9,7 +9,7 @@ from typing import Any
 from jinja2 import Environment
 from markupsafe import Markup
 
-from auditor.report import domain_answers, language_charts, repeating
+from auditor.report import domain_answers, repeating, row_charts
 from auditor.report.formatting import FIGURES, figure, number, plain_name, proportion, value
 from auditor.report.page import WorstWords, environment, word_tables
 
@@ -87,6 +87,6 @@ def _drawing(place: int, name: str, document: Json) -> Markup:
         for own in domain_answers.ordered(document)
         if (row := domain_answers.penalty_of(document, own["name"], name)) is not None
     ]
-    return language_charts.points(
+    return row_charts.points(
         f"penalty-{place}", f"{plain_name(name)}: domain over general text", rows, 1.0
     )

@@ -1,60 +1,19 @@
-"""Drawings for a comparison of languages: cost as points with intervals, and pairs of records."""
+"""A drawing of pairs of records, for a comparison of languages."""
 
 from __future__ import annotations
 
-from collections.abc import Mapping, Sequence
+from collections.abc import Mapping
 from typing import Any
 
 from markupsafe import Markup
 
 from auditor.report.bins import round_step
-from auditor.report.charts import SHAPES, Plot, drawing, label_width, shortened, tag
+from auditor.report.charts import tag
 from auditor.report.formatting import clean, count
 
 Json = Mapping[str, Any]
 
-_ROW, _TOP, _RIGHT = 19, 24, 0.84
-_LABEL_CELLS = 22
 _SIDE, _MARGIN = 300, 44
-
-
-def points(
-    key: str, title: str, rows: Sequence[tuple[str, Json]], reference: float | None
-) -> Markup:
-    """Draw a figure of each row as a point on its interval; ``reference`` is a line across."""
-    names = [clean(name, 60) or "(empty)" for name, _ in rows]
-    ends = [figure["high"] or figure["value"] or 0 for _, figure in rows]
-    plot = Plot(label_width(names), max([*ends, reference or 0]) or 1.0)
-    bottom = _TOP + len(rows) * _ROW
-    parts = [_grid(tick, plot, bottom) for tick in plot.ticks()]
-    if reference is not None:
-        x = plot.place(reference)
-        parts.append(tag("line", x1=x, x2=x, y1=_TOP - 5, y2=bottom, class_="limit"))
-    for place, (name, (_, figure)) in enumerate(zip(names, rows, strict=True)):
-        parts.append(_row(_TOP + place * _ROW + _ROW // 2, name, figure, plot))
-    told = "A dot is the value, the line its 95% interval; the table below holds the numbers."
-    return drawing(key, bottom + 6, title, told, *parts)
-
-
-def _grid(tick: float, plot: Plot, bottom: int) -> Markup:
-    x = plot.place(tick)
-    text = tag("text", f"{tick:g}", x=x, y=13, text_anchor="middle")
-    return tag("line", x1=x, x2=x, y1=_TOP - 5, y2=bottom, class_="grid") + text
-
-
-def _row(y: int, name: str, figure: Json, plot: Plot) -> Markup:
-    label = tag(
-        "text", tag("title", name), shortened(name, _LABEL_CELLS), x=0, y=y + 4, class_="name"
-    )
-    if figure["value"] is None:
-        return label
-    value = tag("text", f"{figure['value']:.3g}", x=f"{100 * (_RIGHT + 0.04):.2f}%", y=y + 4)
-    dot = tag("svg", tag("path", d=SHAPES[0][1]), x=plot.place(figure["value"]), y=y, class_="dot")
-    line = Markup("")
-    if figure["low"] is not None and figure["high"] is not None:
-        x1, x2 = plot.place(figure["low"]), plot.place(figure["high"])
-        line = tag("line", x1=x1, x2=x2, y1=y, y2=y, class_="interval")
-    return label + line + dot + value
 
 
 def scatter(key: str, found: Json) -> Markup:

@@ -9,7 +9,7 @@ from typing import Any
 from jinja2 import Environment
 from markupsafe import Markup
 
-from auditor.report import answers, language_answers, language_charts, repeating
+from auditor.report import answers, language_answers, language_charts, repeating, row_charts
 from auditor.report.formatting import figure, number, proportion
 from auditor.report.page import environment
 from auditor.report.tables import character_name
@@ -67,7 +67,7 @@ def _drawing(number: int, vocabulary: Json) -> Markup:
     rows = [(own["language"], _ranked(own, paired=paired)) for own in vocabulary["languages"]]
     drawn = rows if len(rows) <= _DRAWN else [*rows[: _DRAWN - 15], *rows[-15:]]
     what = "Premium over the reference" if paired else "Tokens per grapheme"
-    return language_charts.points(
+    return row_charts.points(
         f"cost-{number}", f"{what}, by language", drawn, 1.0 if paired else None
     )
 

@@ -2,15 +2,21 @@
 
 from __future__ import annotations
 
+import hashlib
+from base64 import b64encode
 from collections.abc import Mapping, Sequence
 from functools import cache
+from importlib.resources import files
 from typing import Any
 
+import orjson
 from jinja2 import Environment, PackageLoader, StrictUndefined
 from markupsafe import Markup, escape
 
-from auditor.report import answers, bins, charts, formatting
+from auditor.report import answers, bins, charts, drawings, formatting
 from auditor.report.answers import Excerpt, Sentence
+from auditor.report.details import FATES as LOSS_FATES
+from auditor.report.details import Details
 from auditor.report.meanings import MEANINGS
 from auditor.report.questions import QUESTIONS
 from auditor.report.repeating import blocks, command, command_notes
@@ -33,15 +39,36 @@ _SLICE_COLUMNS = (
 _LIMIT_DRAWN = 4
 
 
-def render(audit: Json, worst: WorstWords) -> str:
+def render(audit: Json, worst: WorstWords, details: Sequence[Details] = ()) -> str:
     """Return the page for an `audit.json` document and the costliest words of each vocabulary.
 
     ``worst`` holds (vocabulary, [(word, count), …]) in the order of `tables.worst_words`; empty
-    when the audit was made without excerpts. The same input gives the same text.
+    when the audit was made without excerpts. ``details`` has one item a vocabulary. The same input
+    gives the same text.
     """
     template = environment().get_template("report.html.jinja")
     return template.render(
         audit=audit,
+        glance=_glance(audit),
+        losses=drawings.losses(audit["vocabularies"]),
+        beside=drawings.beside(audit["vocabularies"]),
+        costly=[
+            (name, drawings.costly(n, name, rows)) for n, (name, rows) in enumerate(worst) if rows
+        ],
+        ranks=[drawings.ranks(n, own) for n, own in enumerate(details) if len(own.ranks) > 1],
+        details=[
+            {
+                "name": own.name,
+                "characters": own.characters.to_dict("records"),
+                "scripts": own.scripts,
+                "drawing": drawings.scripts(number, own),
+            }
+            for number, own in enumerate(details)
+            if own.scripts
+        ],
+        loss_fates=LOSS_FATES,
+        **script_of("page.js"),
+        tried=Markup(_tried(audit["vocabularies"])),  # noqa: S704 - numbers only
         slice_sets=[_set(number, audit, *found) for number, found in enumerate(sets(audit))],
         word_tables=[table for name, rows in worst for table in word_tables(name, rows)],
         anything_cut=any(map(anything_cut, audit["vocabularies"])),
@@ -100,6 +127,50 @@ def _interval_or_note(figure: Json, name: str) -> str:
     if figure["note"]:
         return "none seen" if figure["numerator"] == 0 else str(figure["note"])
     return formatting.interval(name, figure) or ""
+
+
+def script_of(name: str) -> dict[str, Any]:
+    """Return a script of this package, and the hash by which the page's policy allows it alone."""
+    text = (files("auditor.report") / "templates" / name).read_text(encoding="utf-8")
+    digest = b64encode(hashlib.sha256(text.encode()).digest()).decode()
+    return {"script": Markup(text), "script_hash": digest}  # noqa: S704 - a file of this package
+
+
+def _tried(vocabularies: Sequence[Json]) -> str:
+    """Return what the slider computes from, as JSON: documents by length of each vocabulary."""
+    held = [
+        {
+            "name": formatting.clean(own["name"], 60),
+            "lengths": [length for length, _ in whole(own)["lengths"]["histogram"]],
+            "documents": [documents for _, documents in whole(own)["lengths"]["histogram"]],
+            "tokens": whole(own)["counts"]["tokens"],
+            "limit": own["limit"]["value"],
+        }
+        for own in vocabularies
+    ]
+    return orjson.dumps(held).decode().replace("<", "\\u003c")
+
+
+def _glance(audit: Json) -> list[dict[str, Any]]:
+    """Return the first answer to each question, one for each vocabulary."""
+    rows = []
+    for question in QUESTIONS:
+        if question.key == "slices":
+            told = [_first_of_slices(own, audit) for own in audit["vocabularies"]]
+        elif question.key == "aside":
+            told = [answers.set_aside(audit["corpus"])[0]]
+        else:
+            told = [question.answer(own, audit)[0] for own in audit["vocabularies"]]
+        rows.append({"question": question, "told": told})
+    return rows
+
+
+def _first_of_slices(vocabulary: Json, audit: Json) -> Sentence:
+    found = sets(audit)
+    if not found:
+        return ("No field was named with --by.",)
+    _, keys = found[0]
+    return answers.slices(vocabulary, costliest_first(vocabulary, keys))[0]
 
 
 def _length_drawings(vocabularies: Sequence[Json]) -> dict[str, list[Any]]:

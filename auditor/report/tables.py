@@ -2,9 +2,10 @@
 
 from __future__ import annotations
 
+import csv
 from collections.abc import Iterable, Iterator, Sequence
 from itertools import islice
-from typing import Any
+from typing import Any, Literal
 
 import numpy as np
 import numpy.typing as npt
@@ -20,6 +21,8 @@ Json = dict[str, Any]
 Row = Sequence[object]
 
 WORST = 1000
+# What makes a spreadsheet compute a cell, when more follows.
+_FORMULAS = frozenset("=+-@\t\r")
 FIGURE_COLUMNS = (
     "vocabulary",
     "slice",
@@ -44,8 +47,23 @@ def frame(columns: Sequence[str], rows: Iterable[Row]) -> pd.DataFrame:
 
 
 def as_csv(table: pd.DataFrame) -> str:
-    """Return a CSV text with a header; an absent value is an empty cell."""
-    return str(table.to_csv(index=False, lineterminator="\n"))
+    """Return a CSV text with a header; an absent value is an empty cell.
+
+    A text that a spreadsheet would take for a formula comes behind an apostrophe, which makes it
+    one (common practice, no source).
+    """
+    rows = [[_unarmed(cell) for cell in row] for row in table.itertuples(index=False, name=None)]
+    # A carriage return by itself ends a row too for whoever reads it, unless it is quoted.
+    returns = any(isinstance(cell, str) and "\r" in cell for row in rows for cell in row)
+    quoting: Literal[0, 2] = csv.QUOTE_NONNUMERIC if returns else csv.QUOTE_MINIMAL
+    return str(
+        frame(list(table.columns), rows).to_csv(index=False, lineterminator="\n", quoting=quoting)
+    )
+
+
+def _unarmed(cell: object) -> object:
+    armed = isinstance(cell, str) and len(cell) > 1 and cell[0] in _FORMULAS
+    return f"'{cell}" if armed else cell
 
 
 def figures(audit: Json) -> pd.DataFrame:

