@@ -11,7 +11,7 @@ from markupsafe import Markup
 
 from auditor.report import domain_answers, repeating, row_charts
 from auditor.report.formatting import FIGURES, figure, number, plain_name, proportion, value
-from auditor.report.page import WorstWords, environment, word_tables
+from auditor.report.page import WorstWords, environment, script_of, word_tables
 
 Json = Mapping[str, Any]
 
@@ -33,6 +33,7 @@ def render(document: Json, worst: WorstWords) -> str:
             else [],
             word_tables=[table for name, rows in worst for table in word_tables(name, rows)],
             command=repeating.domain_command(document),
+            **script_of("page.js"),
             command_notes=repeating.command_notes({**document, "vocabularies": []}),
             blocks=repeating.blocks({**document, "vocabularies": document["candidates"]}),
         )

@@ -11,7 +11,7 @@ from markupsafe import Markup
 
 from auditor.report import answers, language_answers, language_charts, repeating, row_charts
 from auditor.report.formatting import figure, number, proportion
-from auditor.report.page import environment
+from auditor.report.page import environment, script_of
 from auditor.report.tables import character_name
 
 Json = Mapping[str, Any]
@@ -33,6 +33,7 @@ def render(document: Json) -> str:
             vocabularies=vocabularies,
             label_answers=language_answers.label_answers(document),
             command=repeating.languages_command(document),
+            **script_of("page.js"),
             command_notes=repeating.command_notes(document),
             blocks=repeating.blocks(document),
             tabled=_TABLED,

@@ -39,7 +39,8 @@
   };
   for (const table of document.querySelectorAll("table.sorts")) {
     const heads = [...table.tHead.rows[table.tHead.rows.length - 1].cells];
-    if (table.tBodies[0].rows.length < 2) continue;
+    const spans = table.querySelector("tbody [rowspan], tbody [colspan]");
+    if (spans || table.tBodies[0].rows.length < 2) continue;
     heads.forEach((head, place) => {
       const name = head.textContent.trim();
       const button = made("button", { type: "button", className: "sort", textContent: "↕" });
