@@ -30,8 +30,8 @@ from auditor.text.folding import folded_phrase, one_spaced
 _COLUMNS = ("term", "variant", "weight")
 _DELIMITERS = (",", ";", "\t")
 _WORD_CHARACTER = regex.compile(properties.WORD_CHARACTER)
-# Powers of ten beyond which a weight is no number of Python's `float` (IEEE 754 binary64).
-_LARGEST_POWER = 300
+# Weights lie within these powers of ten, so that sums of them are integers of 64 bits or near one.
+_LARGEST_POWER = 12
 
 
 @dataclass(frozen=True, slots=True)

@@ -4,6 +4,7 @@ from __future__ import annotations
 
 import json
 from collections import Counter
+from functools import partial
 
 import orjson
 import pytest
@@ -11,8 +12,9 @@ from hypothesis import given, settings
 from hypothesis import strategies as st
 
 import auditor.encoding.terms as finding
-from auditor.corpus.glossary import Glossary, Term
+from auditor.corpus.glossary import Glossary, Term, read_glossary
 from auditor.encoding.terms import TermFinder
+from auditor.runs.processes import Processes
 from auditor.text.stretch import Stretch
 from auditor.vocabulary import VocabularySpec, open_vocabulary
 from tests import oracle
@@ -117,8 +119,9 @@ NOTES = [
 DEMO_SPELLINGS = {
     **{term: term for term in (
         "wind vane", "buoy", "anemometer", "boia", "Antifoulinganstrich", "weld", "AIS", "lantern",
-        "kN", "蓄電池", "浮標", "लालटेन", "الحلقة", "σημαντήρας", "zinc anode", "sacrificial anode", "<s>",
-        "line", "ss", "😀 x", "strasse", "istanbul", "café", "e\u0301", "two spaces",
+        "kN", "蓄電池", "浮標", "लालटेन", "الحلقة", "σημαντήρας", "zinc anode", "<s>",
+        "sacrificial anode", "line", "ss", "😀 x", "strasse", "istanbul", "café", "e\u0301",
+        "two spaces",
     )},
     "АІС": "AIS", "кН": "kN", "zinc anodes": "zinc anode",
 }  # fmt: skip
@@ -144,6 +147,35 @@ def test_batches_and_forgetting_change_nothing(monkeypatch, batch):
     for begin in range(0, len(NOTES), batch):
         finder.measure(Stretch(NOTES[begin : begin + batch]))
     assert [list(tally.rows()) for tally in finder.tallies] == expected
+
+
+class Finding:
+    """What each process does here: it finds terms in batches of notes."""
+
+    def __init__(self, glossary):
+        self._finder = TermFinder([opened(name) for name in VOCABULARIES], glossary)
+        self.facts = []
+
+    def measure(self, texts):
+        self._finder.measure(Stretch(texts))
+
+    def finish(self):
+        return self._finder.tallies
+
+
+@pytest.mark.parametrize("workers", [1, 2])
+def test_one_process_or_two_give_the_same(workers):
+    """Batches of 30 notes spread over processes: tallies merge to those of one finder."""
+    glossary = read_glossary(DEMO / "glossary.csv")
+    batches = [(NOTES[begin : begin + 30],) for begin in range(0, len(NOTES), 30)]
+    every, merged = Finding(glossary), TermFinder([opened(n) for n in VOCABULARIES], glossary)
+    every.measure(NOTES)
+    with Processes(partial(Finding, glossary), workers) as processes:
+        list(processes.measured(batches))
+        for tallies in processes.finished():
+            merged.merge(tallies)
+    assert merged.tallies == every.finish()
+    assert sum(count for _, count in merged.tallies[0].rows()) > 900
 
 
 def test_finders_merge():
