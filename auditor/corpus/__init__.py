@@ -2,6 +2,7 @@
 
 from auditor.corpus.batch import Batch, Flaw
 from auditor.corpus.fields import Fields, resolve_fields
+from auditor.corpus.glossary import Glossary, Term, read_glossary
 from auditor.corpus.options import ReadOptions
 from auditor.corpus.reading import read
 from auditor.corpus.sources import Source, find_sources
@@ -10,9 +11,12 @@ __all__ = [
     "Batch",
     "Fields",
     "Flaw",
+    "Glossary",
     "ReadOptions",
     "Source",
+    "Term",
     "find_sources",
     "read",
+    "read_glossary",
     "resolve_fields",
 ]

@@ -17,10 +17,19 @@ from auditor.encoding.terms import TermFinder
 from auditor.runs.processes import Processes
 from auditor.text.stretch import Stretch
 from auditor.vocabulary import VocabularySpec, open_vocabulary
+from auditor.vocabulary.bytelevel import CHARACTER_OF_BYTE
+from auditor.vocabulary.separation import separate
 from tests import oracle
 from tests.oracle.terms import Found, sought, terms_of
-from tests.unit.encoding.random_vocabularies import KINDS, descriptions
+from tests.unit.encoding.random_vocabularies import (
+    KINDS,
+    PREFIXED,
+    descriptions,
+    merged,
+    spelled,
+)
 from tests.unit.runs.conftest import DEMO, TROUBLE, VOCABULARIES
+from tests.unit.small_vocabularies import described
 
 # What cuts are made at, what joins across them, and what a vocabulary takes for a control string.
 ALPHABET = [
@@ -97,7 +106,7 @@ def folder(tmp_path_factory):
 
 
 @pytest.mark.parametrize("kind", list(KINDS))
-@settings(max_examples=25)
+@settings(max_examples=15)
 @given(data=st.data())
 def test_random_vocabularies_break_terms_as_the_oracle_says(kind, folder, data):
     """Random entries, random merges, random text: contexts, whole documents and the oracle."""
@@ -110,6 +119,16 @@ def test_random_vocabularies_break_terms_as_the_oracle_says(kind, folder, data):
     assert rows == counted(vocabulary, glossary, texts, whole=True)
     assert rows == counted(vocabulary, glossary, texts, batch=1)
     agree(rows, terms_of(texts, SPELLINGS, oracle.open_tokenizers(text)))
+
+
+def test_what_stands_before_a_context_is_not_forgotten(tmp_path):
+    """A space is set before a text: at its start `` ab`` is broken `` a·b``, elsewhere ``ab``."""
+    pairs = [("▁", "a"), ("a", "b")]
+    model = merged(list(CHARACTER_OF_BYTE.values()), [spelled(pair) for pair in pairs])
+    vocabulary = described(tmp_path, pre_tokenizer=PREFIXED, decoder=PREFIXED, model=model)
+    rows = counted(vocabulary, glossary_of({"ab": "ab"}), ["ab", "b (ab", "b\nab", "b ab"])
+    assert [(row.broken, count) for row, count in rows] == [("ab", 2), ("a·b", 2)]
+    assert not isinstance(separate(vocabulary), str)
 
 
 NOTES = [

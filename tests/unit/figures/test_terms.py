@@ -142,7 +142,7 @@ def test_weights_are_added_exactly(tmp_path):
 
 
 def test_cases_worked_by_hand(tmp_path):
-    """Byte-level with ``light`` and `` light``: a capital leaves ``ight``, capitals leave letters."""
+    """Byte-level with ``light`` and `` light``: a capital leaves ``ight``, more leave letters."""
     merges = [("l", "i"), ("g", "h"), ("gh", "t"), ("li", "ght"), ("Ġ", "light"), ("i", "ght")]
     found = construct(byte_level(tmp_path, merges), Glossary((Term("light", ("Lights",)),)))
     shown = {

@@ -15,6 +15,7 @@ from tests.oracle.terms import occurrences, sought
 ALPHABET = [
     *"abAs1é.'-_,: \n\t", "ß", "ﬃ", "İ", "ſ", "\u0301", "\u00a0", "\r\n", "  ", "\u200d", "\u200b",
     "係", "留", "カ", "ส", "วั", "ς", "Σ", "K", "😀", "\u2028",
+    "i", "և", "ե", "ւ",
 ]  # fmt: skip
 texts = st.lists(st.lists(st.sampled_from(ALPHABET), max_size=14).map("".join), max_size=5)
 
@@ -48,6 +49,10 @@ def words(phrases, text):
         ("straße", "STRASSE, Straße, strasse", 3),
         ("stras", "Straß", []),
         ("s", "ß", []),
+        ("i", "İ", []),
+        ("ե", "և", []),
+        ("ւ", "և", []),
+        ("եւ", "և", ["և"]),
         ("anchor", "anchor_1 anchors' anchor's 'anchor'", ["anchor"]),
         ("km/h", "9 km/h", ["km/h"]),
         ("C++", "C++ and c++.", 2),
