@@ -35,6 +35,10 @@ class CorpusError(AuditError):
     """The corpus cannot be found, read or understood."""
 
 
+class GlossaryError(AuditError):
+    """A glossary cannot be read, or contradicts itself."""
+
+
 class VocabularyError(AuditError):
     """A vocabulary cannot be found, opened or trusted."""
 

@@ -12,6 +12,7 @@ import pyarrow.compute as pc
 
 from auditor.encoding.dotted import DOT, Held, Touching, dotted
 from auditor.encoding.measures import Reading
+from auditor.encoding.shown import Shown, parts_of
 from auditor.tallies.words import BrokenWord, table_of
 from auditor.text.stretch import Stretch
 from auditor.vocabulary.engine import Bools, Ints, Inventory
@@ -45,13 +46,7 @@ class BrokenWords:
     """
 
     def __init__(self, inventory: Inventory) -> None:
-        self._inventory = inventory
-        plain = ~inventory.stands_for_bytes
-        if inventory.unknown is not None:
-            plain[inventory.unknown] = False
-        # Whether the piece is shown by the characters it holds, by id.
-        self._plain_ids: Bools = plain
-        self._plain: list[bool] = plain.tolist()
+        self._shown = Shown(inventory)
         self._known: dict[Key, BrokenWord] = {}
 
     def find(self, reading: Reading) -> Broken:
@@ -60,7 +55,7 @@ class BrokenWords:
         hit = np.flatnonzero((reading.touches >= 2) | (reading.unknown_touches > 0))
         held = Held.of(reading.spans)
         words = held.over(stretch.words.starts[hit], stretch.words.ends[hit])
-        plain = words.end_to_end(held, self._plain_ids[held.ids]) & _short_and_undotted(
+        plain = words.end_to_end(held, self._shown.plain[held.ids]) & _short_and_undotted(
             stretch, words
         )
         strings = dotted(stretch.points, words.chosen(plain), held)
@@ -107,33 +102,11 @@ class BrokenWords:
         if len(self._known) >= _REMEMBERED:
             self._known.clear()
         word = key[0]
-        parts = [
-            (number, max(0, start - begin), min(len(word), end - begin))
-            for number, start, end in zip(*tokens, strict=True)
-            if start - begin < len(word) and end > begin
-        ]
-        broken = _shortened(self._spelled(word, parts))
+        parts = parts_of(word, begin, tokens)
+        broken = _shortened(DOT.join(self._shown.pieces(word, parts)))
         row = BrokenWord(_shortened(word), broken, len(parts), int(unknown))
         self._known[key] = row
         return row
-
-    def _spelled(self, word: str, parts: list[tuple[int, int, int]]) -> str:
-        """Return the word with a dot between pieces; pieces that are bytes as ⟨hexadecimal⟩."""
-        shown, reached = [], 0
-        for number, start, end in parts:
-            if self._plain[number] and end > reached:
-                shown.append(word[max(start, reached) : end])
-            elif self._inventory.stands_for_bytes[number]:
-                shown.append(f"⟨{self._bytes(number)}⟩")
-            else:
-                shown.append(f"⟨{self._inventory.entries[number]}⟩")
-            reached = max(reached, end)
-        return DOT.join(shown)
-
-    def _bytes(self, number: int) -> str:
-        if self._inventory.entry_bytes is not None:
-            return (self._inventory.entry_bytes[number] or b"").hex(" ").upper()
-        return (self._inventory.entries[number] or "")[3:5]
 
 
 def _short_and_undotted(stretch: Stretch, words: Touching) -> Bools:

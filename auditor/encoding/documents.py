@@ -3,13 +3,13 @@
 from __future__ import annotations
 
 import hashlib
-import re
 from collections.abc import Callable
 from dataclasses import dataclass, field
 from functools import partial
 
 import numpy as np
 
+from auditor.encoding.added import AddedContents
 from auditor.encoding.cutting import FIRST, LAST, Cut, Places, cut
 from auditor.encoding.ledger import Ledger
 from auditor.encoding.measures import Columns, text_columns
@@ -89,7 +89,7 @@ class Documents:
         ]
         held = [s for s in self._separations if s is not None]
         self._places = Places(held) if held else None
-        self._added = _AddedContents(sorted({c for s in held for c in s.whole_for}))
+        self._added = AddedContents(sorted({c for s in held for c in s.whole_for}))
         self._ledger = Ledger(len(self._cut), self._measure_pieces, self._sink_pieces)
 
     def _separate(self, *, whole: bool) -> list[Separation | None]:
@@ -253,17 +253,3 @@ def _same_runs(ours: RunTable, theirs: RunTable, place: int) -> bool:
 
 def _by_kind(kinds: Ints, table: Ints) -> dict[int, list[int]]:
     return {kind: table[kinds == kind].sum(axis=0).tolist() for kind in set(kinds.tolist())}
-
-
-class _AddedContents:
-    """Finds the texts that hold an added token."""
-
-    def __init__(self, contents: list[str]) -> None:
-        self._pattern = re.compile("|".join(map(re.escape, contents))) if contents else None
-
-    def in_texts(self, texts: list[str]) -> Bools:
-        """Return which of ``texts`` hold one, shape (texts,)."""
-        if self._pattern is None:
-            return np.zeros(len(texts), dtype=np.bool_)
-        search = self._pattern.search
-        return np.array([search(text) is not None for text in texts], dtype=np.bool_)

@@ -24,6 +24,7 @@ from auditor.tallies.lengths import LengthsTally
 from auditor.tallies.moments import MomentsTally, OriginsTally
 from auditor.tallies.parallel import ParallelTally
 from auditor.tallies.rows import RowsTally
+from auditor.tallies.terms import TermRow, TermsTally
 from auditor.tallies.usage import UsageTally
 from auditor.tallies.whitespace import COLUMNS, WhitespaceTally
 from auditor.tallies.words import BrokenWord, WordsTally
@@ -79,6 +80,11 @@ def fill_words(tally, rows, _):
         tally.add(BrokenWord(row[4], row[2], row[1], 0), 1)
 
 
+def fill_terms(tally, rows, _):
+    for row in rows:
+        tally.add(TermRow(row[2], row[4], row[3], row[1], 0, row[1] % 2, 0, 0), 1 + row[1])
+
+
 def fill_characters(tally, rows, begin):
     for place, row in enumerate(rows):
         tally.add(row[2], row[3], 1 + row[1], Place(row[1] % 2, begin + place))
@@ -132,6 +138,7 @@ TALLIES = {
         fill_parallel,
     ),
     WordsTally: (lambda: WordsTally(in_memory=2), None, fill_words),
+    TermsTally: (lambda: TermsTally("one"), lambda: TermsTally("another"), fill_terms),
     CharactersTally: (CharactersTally, None, fill_characters),
     FlawsTally: (FlawsTally, None, fill_flaws),
     DigestTally: (lambda: DigestTally(distinct=True), DigestTally, fill_digest),
