@@ -83,7 +83,11 @@ def build(folder: Path) -> dict[str, Render]:
         "inspection_notes.jsonl", "harbour-bytelevel", "harbour-wordpiece", "harbour-unigram",
         "harbour-sentencepiece", by=(),
     )  # fmt: skip
-    against = DomainWishes(general=(f"{DEMO}/everyday.txt",), shape=parse_model(MODEL))
+    against = DomainWishes(
+        general=(f"{DEMO}/everyday.txt",),
+        shape=parse_model(MODEL),
+        terms=Path(f"{DEMO}/glossary.csv"),
+    )
     vetted = vet_domain(candidates, against, folder / DOMAIN, overwrite=True)
     pages[DOMAIN] = partial(domain_page.render, worst=vetted.worst_words)
     return pages

@@ -173,6 +173,7 @@ def domain(
     *,
     general: Any = None,  # noqa: ANN401 - as ``source``, or an AuditResult, or an audit's path
     general_text: Names | None = None,
+    terms: str | Path | None = None,
     weigh: Mapping[str, float] | None = None,
     width: int | None = None,
     model: str | None = None,
@@ -187,7 +188,8 @@ def domain(
 ) -> DomainResult:
     """Vet candidate vocabularies for the domain of ``source``: `auditor domain`.
 
-    ``weigh`` holds the weights of the ranking by criterion (`auditor.planning.ranking.CRITERIA`).
+    ``terms`` is the file of a glossary. ``weigh`` holds the weights of the ranking by criterion
+    (`auditor.planning.ranking.CRITERIA`).
     """
     shape: ModelShape | None = parse_model(model) if model else None
     reading = _reading(reading, limit=limit, text=text)
@@ -199,6 +201,7 @@ def domain(
             weights=dict(USUAL) if weigh is None else weights_of(weigh),
             width=width,
             shape=shape,
+            terms=None if terms is None else Path(terms),
         )
         done = vetting.vet_domain(plan, wishes, folder, overwrite=overwrite, progress=progress)
         return DomainResult(done.document, done.folder, held)

@@ -39,6 +39,12 @@ Examples:
     help="The text field(s) of the general corpus [default: as --text].",
 )
 @click.option(
+    "--terms",
+    type=click.Path(path_type=Path),
+    metavar="FILE",
+    help="A glossary: one term a line, or CSV with term, variant, weight.",
+)
+@click.option(
     "--weigh",
     metavar="NAME=N[,NAME=N]",
     help="What the ranking weighs: tokens, losses, terms, parameters"
@@ -92,6 +98,7 @@ def command(
         weights=parse_weights(options["weigh"]) if options["weigh"] else dict(USUAL),
         width=options["width"],
         shape=parse_model(options["model"]) if options["model"] else None,
+        terms=options["terms"],
     )
     shown = progress.for_terminal(quiet=options["quiet"])
     try:

@@ -40,6 +40,7 @@ _REMEDIES = {
 HEADINGS = {
     "losses": "What is lost",
     "cost": "What it costs",
+    "terms": "What becomes of the terms",
     "choice": "Which comes first",
     "help": "What would help",
 }
@@ -50,6 +51,7 @@ def verdict(document: Json) -> dict[str, list[str]]:
     parts = {
         "losses": (_losses,),
         "cost": (_costs, _beside, _limits),
+        "terms": (_terms,),
         "choice": (_order,),
         "help": (_help,),
     }
@@ -127,6 +129,51 @@ def _limits(document: Json) -> Iterator[str]:
                 f"At its limit of {count(limit)}, {named(own)} cuts"
                 f" {ranged('truncated_documents', cut)} of the documents."
             )
+
+
+def _terms(document: Json) -> Iterator[str]:
+    for own in ordered(document):
+        found = own["terms"]
+        if found is None:
+            continue
+        by_term = found["by_term"]
+        lost = by_term["unknown"]["count"] + by_term["dropped"]["count"]
+        told = (
+            f"Of {plural(found['terms'], 'term')}, {named(own)} keeps"
+            f" {count(by_term['words_whole']['count'])} with every word whole"
+            f" ({proportion(by_term['words_whole']['share'])})"
+        )
+        if lost:
+            told += f" and loses a character of {count(lost)}"
+        if by_term["byte_spelled"]["count"]:
+            told += f"; {count(by_term['byte_spelled']['count'])} are spelled in bytes in part"
+        yield f"{told}."
+    first = ordered(document)[0]["terms"]
+    if first is not None and first["not_in_corpus"]:
+        absent = plural(len(first["not_in_corpus"]), "term does", "terms do")
+        yield f"{absent} not occur in the corpus."
+
+
+def worst_terms(document: Json) -> list[Json]:
+    """Return the terms that break, most tokens in the corpus beyond a word's one first.
+
+    Each with its rows by vocabulary, in the order of the ranking.
+    """
+    order = [own["name"] for own in ordered(document)]
+    rows: dict[str, dict[str, Json]] = {}
+    for row in document["terms"]:
+        rows.setdefault(row["term"], {})[row["vocabulary"]] = row
+    held = [[own[name] for name in order] for own in rows.values()]
+    return [
+        {"term": own[0]["term"], "occurrences": own[0]["occurrences"], "rows": own}
+        for own in sorted(held, key=_cost_of_term)
+    ]
+
+
+def _cost_of_term(rows: list[Json]) -> tuple[int, int]:
+    """Return a key by which terms are listed: those that cost most in the corpus, then alone."""
+    extra = rows[0]["tokens"] - 1
+    return -rows[0]["occurrences"] * extra, -extra
 
 
 def _order(document: Json) -> Iterator[str]:

@@ -15,8 +15,26 @@ from auditor.report.page import WorstWords, environment, script_of, word_tables
 
 Json = Mapping[str, Any]
 
+_TERMS = 100
 # Figures whose ratio is drawn: what a token costs, and what is broken.
 _DRAWN = ("fertility", "pieces_per_word", "continued_words", "bytes_per_token")
+
+
+_SHARES = {
+    "by_term": "each term once",
+    "by_weight": "by weight",
+    "by_use": "by use in the corpus",
+    "running_text": "occurrences, as broken in running text",
+}
+_STATES = {
+    "words_whole": "every word whole",
+    "whole": "one token",
+    "two": "in two",
+    "three_or_more": "in three or more",
+    "unknown": "unknown characters",
+    "dropped": "dropped characters",
+    "byte_spelled": "spelled in bytes in part",
+}
 
 
 def render(document: Json, worst: WorstWords) -> str:
@@ -31,6 +49,7 @@ def render(document: Json, worst: WorstWords) -> str:
             drawings=[_drawing(n, name, document) for n, name in enumerate(_DRAWN)]
             if document["general"]
             else [],
+            worst_terms=domain_answers.worst_terms(document)[:_TERMS],
             word_tables=[table for name, rows in worst for table in word_tables(name, rows)],
             command=repeating.domain_command(document),
             **script_of("page.js"),
@@ -58,6 +77,8 @@ def _environment() -> Environment:
         "weights_mean": domain_answers.WEIGHTS,
         "headings": domain_answers.HEADINGS,
         "drawn": _DRAWN,
+        "shares": _SHARES,
+        "state_names": _STATES,
         "value_of": value,
         "known": FIGURES,
     }

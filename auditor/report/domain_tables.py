@@ -17,6 +17,9 @@ PENALTY_COLUMNS = (
     "vocabulary", "slice", "figure", "domain", "domain_low", "domain_high", "general",
     "general_low", "general_high", "ratio", "ratio_low", "ratio_high", "note",
 )  # fmt: skip
+TERM_COLUMNS = (
+    "vocabulary", "term", "weight", "form", "position", "count", "state", "tokens", "broken",
+)  # fmt: skip
 _ENDS = ("value", "low", "high")
 
 
@@ -38,6 +41,27 @@ def _candidate(own: Json) -> Iterator[tuple[object, ...]]:
             yield row(pair["other"], name, pair[name])
     for name, value in own["price"].items():
         yield (own["name"], None, name, value, *[None] * 5)
+
+
+def terms(document: Json) -> pd.DataFrame:
+    """Return one row a vocabulary, term and form: in the corpus, and in constructed positions.
+
+    ``position`` is "running text" for forms of the corpus, which alone have a count.
+    """
+    rows = (row for term in document["terms"] for row in _term(term))
+    return frame(TERM_COLUMNS, rows)
+
+
+def _term(term: Json) -> Iterator[tuple[object, ...]]:
+    head = (term["vocabulary"], term["term"], term["weight"])
+    for form in term["forms"]:
+        for way in form["ways"]:
+            yield (*head, form["form"], "running text", way["count"], way["state"], way["tokens"],
+                   way["broken"])  # fmt: skip
+    for own in term["constructed"]:
+        for position, way in own["positions"].items():
+            told = f"{position}, {own['case']}"
+            yield (*head, own["form"], told, None, way["state"], way["tokens"], way["broken"])
 
 
 def penalty(document: Json) -> pd.DataFrame:

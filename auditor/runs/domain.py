@@ -8,10 +8,12 @@ from functools import partial
 from pathlib import Path
 from typing import Any
 
-from auditor.corpus import Named, find_sources, resolve_fields
+from auditor.corpus import Glossary, Named, find_sources, read_glossary, resolve_fields
+from auditor.encoding.constructed import Constructed
 from auditor.encoding.documents import SeparationError
 from auditor.errors import SettingsError
 from auditor.figures import sidebyside
+from auditor.figures.terms import terms_as_json
 from auditor.figures.values import Value
 from auditor.planning import fit, ranking
 from auditor.planning.histogram import LengthHistogram
@@ -21,7 +23,7 @@ from auditor.runs import yardstick
 from auditor.runs.assembling import assemble
 from auditor.runs.auditing import WorstWords, worst_words
 from auditor.runs.audits import Audit, audit_at
-from auditor.runs.measuring import Finished, empty_tallies
+from auditor.runs.measuring import empty_tallies
 from auditor.runs.output import DOMAIN_FILES, OutputFolder
 from auditor.runs.plan import Plan
 from auditor.runs.processes import Processes, choose_workers
@@ -35,9 +37,17 @@ from auditor.runs.reading import (
     with_conversations,
 )
 from auditor.runs.tallied import AuditTallies
-from auditor.runs.vetting import HALF, NOT_NFC, DomainMeasurer, DomainOutcome, DomainTallies
+from auditor.runs.vetting import (
+    HALF,
+    NOT_NFC,
+    DomainFinished,
+    DomainMeasurer,
+    DomainOutcome,
+    DomainTallies,
+)
 from auditor.runs.yardstick import Yardstick
 from auditor.tallies.groups import ALL
+from auditor.tallies.terms import TermsTally
 from auditor.vocabulary import VocabularyFacts
 
 Json = dict[str, Any]
@@ -50,7 +60,7 @@ class DomainWishes:
 
     ``general`` names the text that is the yardstick, or one earlier audit; ``general_text`` its
     text fields where they are others. ``weights`` are those of the ranking. ``width`` or ``shape``
-    say what model pays.
+    say what model pays. ``terms`` is the file of a glossary.
     """
 
     general: tuple[str | Named | Audit, ...] = ()
@@ -58,6 +68,7 @@ class DomainWishes:
     weights: dict[str, float] = field(default_factory=lambda: dict(ranking.USUAL))
     width: int | None = None
     shape: ModelShape | None = None
+    terms: Path | None = None
 
 
 @dataclass(frozen=True)
@@ -105,18 +116,20 @@ def _vetted(
     reading = Reading(sources, fields, how, progress)
     workers = choose_workers(plan.workers, reading.total)
     audit, texts = _split(wishes.general)
-    with Processes(partial(DomainMeasurer, plan), workers) as processes:
+    glossary = None if wishes.terms is None else read_glossary(wishes.terms)
+    with Processes(partial(DomainMeasurer, plan, glossary), workers) as processes:
         facts = named_apart(processes.facts)
         general = None if audit is None else yardstick.from_audit(audit, plan, facts)
         named = default_name(plan, [own.name for own in facts])
         folder = out or Path("reports") / f"{named}--domain"
         with OutputFolder(folder, overwrite=overwrite, files=DOMAIN_FILES) as output:
-            tallies, own = _measured(plan, facts, processes, reading)
+            tallies, own, terms = _measured(plan, facts, glossary, processes, reading)
             if texts:
                 other = yardstick.general_plan(plan, texts, wishes.general_text)
                 general = yardstick.measured(other, progress)
             worst = worst_words(plan, facts, tallies)
-            document = _Vetting(plan, wishes, reading, facts, tallies, own, general).document()
+            vetting = _Vetting(plan, wishes, reading, facts, tallies, own, general, terms)
+            document = vetting.document()
             _write(output, document, worst)
             return WrittenDomain(document, worst, folder, output.finish())
 
@@ -140,23 +153,35 @@ def _split(
 def _measured(
     plan: Plan,
     facts: list[VocabularyFacts],
-    processes: Processes[DomainOutcome, Finished],
+    glossary: Glossary | None,
+    processes: Processes[DomainOutcome, DomainFinished],
     reading: Reading,
-) -> tuple[AuditTallies, DomainTallies]:
+) -> tuple[AuditTallies, DomainTallies, list[Json]]:
+    """Return the tallies of the whole corpus, and what each vocabulary makes of the terms."""
     tallies, own = empty_tallies(plan, facts), DomainTallies.empty(len(facts))
     for found in processes.measured(batches(plan, reading)):
         tallies.merge_documents(found.corpus, found.audit)
         own.merge(found.own)
     refuse_empty(tallies.measured, tallies.corpus.set_aside, reading.names)
+    terms: list[TermsTally] = []
+    constructed: list[list[Constructed]] = []
     for finished in processes.finished():
-        tallies.merge_contents(finished.contents)
-    return tallies, own
+        tallies.merge_contents(finished.audit.contents)
+        constructed = finished.constructed
+        for ours, theirs in zip(terms, finished.terms, strict=bool(terms)):
+            ours.merge(theirs)
+        terms = terms or finished.terms
+    if glossary is None:
+        return tallies, own, []
+    pairs = zip(constructed, terms, strict=True)
+    return tallies, own, [terms_as_json(glossary, *pair) for pair in pairs]
 
 
 def _write(output: OutputFolder, document: Json, worst: WorstWords) -> None:
     output.write("domain.json", contract.dump(document))
     output.write("candidates.csv", tables.as_csv(domain_tables.candidates(document)))
     output.write("penalty.csv", tables.as_csv(domain_tables.penalty(document)))
+    output.write("terms.csv", tables.as_csv(domain_tables.terms(document)))
     output.write("words.csv", tables.as_csv(tables.words(worst)))
     output.write("report.html", domain_page.render(document, worst))
 
@@ -179,12 +204,14 @@ class _Vetting:
         tallies: AuditTallies,
         own: DomainTallies,
         general: Yardstick | None,
+        terms: list[Json],
     ) -> None:
         settings: Json = {
             "fields": reading.fields.as_json(),
             "conversations": reading.conversations,
             "general": [_called(own) for own in wishes.general],
             "general_text": list(wishes.general_text or ()),
+            "terms": None if wishes.terms is None else str(wishes.terms),
             "weights": wishes.weights,
             "width": wishes.width,
             "model": None if wishes.shape is None else asdict(wishes.shape),
@@ -192,6 +219,7 @@ class _Vetting:
         self._audit = assemble(plan, facts, tallies, reading.names, settings)
         self._wishes, self._facts = wishes, facts
         self._tallies, self._own, self._general = tallies, own, general
+        self._terms = terms
 
     def document(self) -> Json:
         """Return the whole document."""
@@ -206,6 +234,11 @@ class _Vetting:
             "general": None if self._general is None else self._general.about,
             "candidates": candidates,
             "penalty": self._penalty(),
+            "terms": [
+                {"vocabulary": facts.name, **row}
+                for facts, own in zip(self._facts, self._terms, strict=bool(self._terms))
+                for row in own["terms"]
+            ],
             "ranking": self._ranking(candidates),
         }
         document["verdict"] = domain_answers.verdict(document)
@@ -231,6 +264,7 @@ class _Vetting:
             "paired": self._paired(place),
             "price": fit.price(facts.entries, limit, histogram, width, shape),
             "halves": self._halves(held["slices"]),
+            "terms": self._terms[place]["summary"] if self._terms else None,
             "remedies": remedies,
         }
 
@@ -293,7 +327,7 @@ class _Vetting:
         short = ranking.shortfalls(
             by_name("counts", "tokens"),
             {name: share or 0.0 for name, share in by_name("lost_characters", "value").items()},
-            {},
+            by_name("terms", "by_term", "words_whole", "share") if self._terms else {},
             by_name("entries"),
         )
         return ranking.rank(short, self._wishes.weights)

@@ -28,7 +28,7 @@ LANGUAGE_FILES = frozenset(
     {"languages.json", "languages.csv", "scripts.csv", "doubtful_labels.jsonl", "report.html"}
 )
 DOMAIN_FILES = frozenset(
-    {"domain.json", "candidates.csv", "penalty.csv", "words.csv", "report.html"}
+    {"domain.json", "candidates.csv", "penalty.csv", "terms.csv", "words.csv", "report.html"}
 )
 
 

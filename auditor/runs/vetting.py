@@ -6,9 +6,11 @@ from dataclasses import dataclass, field, replace
 
 import numpy as np
 
-from auditor.corpus import Batch
+from auditor.corpus import Batch, Glossary
 from auditor.encoding.composed import COLUMNS as FORM_COLUMNS
 from auditor.encoding.composed import not_composed
+from auditor.encoding.constructed import Constructed, construct
+from auditor.encoding.terms import TermFinder
 from auditor.figures import sidebyside
 from auditor.runs.measuring import Finished, Measurer, Outcome
 from auditor.runs.plan import Plan
@@ -16,7 +18,9 @@ from auditor.runs.tallied import CorpusTallies, DocumentTallies
 from auditor.tallies.groups import groupings
 from auditor.tallies.moments import MomentsTally
 from auditor.tallies.rows import RowsTally
+from auditor.tallies.terms import TermsTally
 from auditor.text.halves import halves_of
+from auditor.text.stretch import Stretch
 from auditor.vocabulary import VocabularyFacts
 
 # A field that no record has: which half of the corpus a document belongs to.
@@ -55,21 +59,55 @@ class DomainOutcome:
     own: DomainTallies
 
 
+@dataclass
+class DomainFinished:
+    """What one process hands over: an audit's own, and of each vocabulary what terms become.
+
+    ``constructed`` and ``terms`` are empty without a glossary.
+    """
+
+    audit: Finished
+    constructed: list[list[Constructed]]
+    terms: list[TermsTally]
+
+
 class DomainMeasurer:
     """Measures batches as an audit does, and what vetting needs beside."""
 
-    def __init__(self, plan: Plan) -> None:
+    def __init__(self, plan: Plan, glossary: Glossary | None = None) -> None:
         self._plan = plan
+        self._glossary = glossary
         self._audit = Measurer(plan, kept=("tokens", *_LOST))
+        self._terms = (
+            None
+            if glossary is None
+            else TermFinder(
+                self._audit.vocabularies, glossary, parse_control=plan.parse_control,
+                whole=plan.whole,
+            )
+        )  # fmt: skip
 
     @property
     def facts(self) -> list[VocabularyFacts]:
         """The facts of the vocabularies that are measured with."""
         return self._audit.facts
 
-    def finish(self) -> Finished:
-        """Return what an audit hands over once all batches are measured."""
-        return self._audit.finish()
+    def finish(self) -> DomainFinished:
+        """Return what an audit hands over once all batches are measured, and the terms."""
+        return DomainFinished(
+            self._audit.finish(),
+            self._constructed(),
+            [] if self._terms is None else self._terms.tallies,
+        )
+
+    def _constructed(self) -> list[list[Constructed]]:
+        if self._glossary is None:
+            return []
+        parse = self._plan.parse_control
+        return [
+            construct(vocabulary, self._glossary, parse_control=parse)
+            for vocabulary in self._audit.vocabularies
+        ]
 
     def measure(self, batch: Batch, source_number: int) -> DomainOutcome:
         """Return the outcome of ``batch``; a document that an engine fails on is set aside."""
@@ -79,6 +117,8 @@ class DomainMeasurer:
         own = DomainTallies.empty(len(self.facts))
         if outcome.batch.texts:
             self._add(own, outcome)
+            if self._terms is not None:
+                self._terms.measure(Stretch(outcome.batch.texts))
         return DomainOutcome(len(batch), outcome.corpus, outcome.documents, own)
 
     def _add(self, own: DomainTallies, outcome: Outcome) -> None:

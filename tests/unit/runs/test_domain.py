@@ -23,7 +23,7 @@ from auditor.vocabulary import VocabularySpec
 from tests.unit.runs.conftest import DEMO, VOCABULARIES, plan
 
 NOTES, EVERYDAY = DEMO / "inspection_notes.jsonl", DEMO / "everyday.txt"
-GENERAL = DomainWishes(general=(str(EVERYDAY),))
+GENERAL = DomainWishes(general=(str(EVERYDAY),), terms=DEMO / "glossary.csv")
 NUMBER = re.compile(r"\d+(?:,\d{3})*(?:\.\d+)?")
 
 
@@ -173,6 +173,13 @@ def spoken(document):
         for found in own["remedies"]:
             numbers = [found[name] for name in ("entries", "length", "documents") if name in found]
             held |= {f"{number:,}" for number in numbers} | {proportion(found["share"])[:-1]}
+        if own["terms"]:
+            by_term = own["terms"]["by_term"]
+            numbers = [own["terms"]["terms"], len(own["terms"]["not_in_corpus"])]
+            numbers += [by_term[name]["count"] for name in ("words_whole", "byte_spelled")]
+            numbers.append(by_term["unknown"]["count"] + by_term["dropped"]["count"])
+            held |= {f"{number:,}" for number in numbers}
+            held.add(proportion(by_term["words_whole"]["share"])[:-1])
     for row in document["penalty"]:
         held |= set(NUMBER.findall(figure(row["ratio"])))
     stability = document["ranking"]["stability"]
@@ -199,7 +206,7 @@ def test_every_number_of_the_verdict_stands_in_the_document(tmp_path, demo):
 
 def test_the_verdict_names_losses_first_then_cost(demo):
     """In this order, the best candidate first; what loses a fifth of the text is not first."""
-    assert list(demo["verdict"]) == ["losses", "cost", "choice", "help"]
+    assert list(demo["verdict"]) == ["losses", "cost", "terms", "choice", "help"]
     order = [row["vocabulary"] for row in demo["ranking"]["order"]]
     assert order[-1] == "harbour-wordpiece"
     assert [told.split()[0] for told in demo["verdict"]["losses"]] == order
