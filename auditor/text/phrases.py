@@ -200,18 +200,27 @@ def _longest(found: Occurrences, lengths: Ints) -> Ints:
     edges = np.flatnonzero(apart)
     sizes = np.diff(edges)
     kept = edges[:-1][sizes == 1].tolist()
-    for begin, size in zip(edges[:-1][sizes > 1].tolist(), sizes[sizes > 1].tolist(), strict=True):
-        group = slice(begin, begin + size)
-        taken: list[tuple[int, int]] = []
-        spans = zip(
-            (-lengths[group]).tolist(),
-            found.starts[group].tolist(),
-            found.ends[group].tolist(),
-            range(begin, begin + size),
-            strict=True,
-        )
-        for _, start, end, place in sorted(spans):
-            if all(end <= a or start >= b for a, b in taken):
-                taken.append((start, end))
-                kept.append(place)
+    for begin, end in zip(
+        edges[:-1][sizes > 1].tolist(), edges[1:][sizes > 1].tolist(), strict=True
+    ):
+        group = slice(begin, end)
+        kept += [
+            begin + place
+            for place in _longest_first(
+                lengths[group].tolist(), found.starts[group].tolist(), found.ends[group].tolist()
+            )
+        ]
     return np.array(sorted(kept), dtype=np.int64)
+
+
+def _longest_first(lengths: list[int], starts: list[int], ends: list[int]) -> list[int]:
+    """Return the places of those taken: the longest first, each that touches none taken before."""
+    origin = starts[0]
+    taken = bytearray(max(ends) - origin)
+    kept = []
+    for place in sorted(range(len(starts)), key=lambda place: (-lengths[place], starts[place])):
+        own = slice(starts[place] - origin, ends[place] - origin)
+        if not any(taken[own]):
+            taken[own] = b"\1" * (own.stop - own.start)
+            kept.append(place)
+    return kept

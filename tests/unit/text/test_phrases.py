@@ -76,6 +76,11 @@ def test_the_longest_of_overlapping_occurrences_counts():
     assert words(["a b", "b c d e", "a"], "a b c d e") == ["a", "b c d e"]
 
 
+def test_a_long_chain_of_overlapping_occurrences():
+    """Each overlaps the next, all through the text: every other one counts, from the left."""
+    assert words(["a b", "b a"], "a b " * 20_000) == ["a b"] * 20_000
+
+
 def test_nothing_reaches_from_one_document_into_the_next():
     """Two words of a phrase in two documents are no occurrence."""
     assert found(["wind vane"], ["wind ", "vane", "wind", " vane", "wind vane"]) == [
