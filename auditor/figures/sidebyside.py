@@ -2,8 +2,9 @@
 
 from __future__ import annotations
 
+from auditor.figures.catalogue import Figure
 from auditor.figures.intervals import ratio_interval
-from auditor.figures.values import Value, undefined
+from auditor.figures.values import Basis, Value, compute, undefined
 from auditor.tallies.moments import HoldsMoments, Moments
 
 INK = "ink_characters"
@@ -55,13 +56,11 @@ def tokens_ratio(tally: HoldsMoments, key: str, ours: int, theirs: int) -> Value
 
 def lost_share(tally: HoldsMoments, key: str, place: int) -> Value:
     """Return the share of characters lost: unknown or dropped, of those that are not whitespace."""
-    moments = tally.moments(key, lost_of(place), INK)
-    if not moments.x:
-        return undefined(NO_INK)
-    low, high = ratio_interval(moments, share=True)
-    return Value(
-        moments.y / moments.x, low, high, moments.y, moments.x, ONE if low is None else None
-    )
+    figure = Figure(
+        "lost_characters", lost_of(place), INK, "share of characters",
+        "Non-whitespace characters that are unknown or dropped.",
+    )  # fmt: skip
+    return compute(figure, key, Basis(tally, tally))
 
 
 def loss_difference(tally: HoldsMoments, key: str, ours: int, theirs: int) -> Value:

@@ -70,7 +70,7 @@ def ordered(document: Json) -> list[Json]:
 def shared(held: Json) -> str:
     """Return a share with its interval; a dash where it is undefined."""
     if held["low"] is None or held["high"] is None:
-        return proportion(held["value"])
+        return proportion(held["value"]) + (f" ({held['note']})" if held["note"] else "")
     low, high = proportion(held["low"]), proportion(held["high"])
     return f"{proportion(held['value'])} ({low} to {high})"
 
@@ -97,7 +97,7 @@ def _losses(document: Json) -> Iterator[str]:
             yield f"{named(own)} loses {shared(lost)} of the characters (unknown or dropped){more}."
         else:
             more = f", though {bytes_}" if spelled["numerator"] else ""
-            yield f"{named(own)} loses no character{more}."
+            yield f"{named(own)} loses no character of this corpus{more}."
 
 
 def _costs(document: Json) -> Iterator[str]:

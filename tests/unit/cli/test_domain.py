@@ -28,7 +28,7 @@ def test_it_writes_the_vetting_and_says_where(run):
     assert "do not measure how well a model does its task" in flat
     assert "may hold personal data" in flat
     assert max(map(len, said.out.splitlines())) <= 80
-    assert flat.index("loses no character") < flat.index("tokens a word")
+    assert flat.index("loses no character of this corpus") < flat.index("tokens a word")
 
 
 def test_without_general_text_it_says_that_figures_stand_alone(run):
