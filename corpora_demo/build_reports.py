@@ -21,9 +21,10 @@ import orjson
 from auditor.corpus import ReadOptions
 from auditor.planning.model import parse_model
 from auditor.planning.plan import Wishes
-from auditor.report import domain_page, language_page, page, plan_page
+from auditor.report import domain_page, inspection_page, language_page, page, plan_page
 from auditor.runs.auditing import assess
 from auditor.runs.domain import DomainWishes, vet_domain
+from auditor.runs.inspecting import inspect
 from auditor.runs.languages import compare_languages
 from auditor.runs.lengths import plan_from_corpus
 from auditor.runs.plan import Plan
@@ -53,9 +54,16 @@ PLANS = {
 
 LENGTH_PLAN = "inspection-notes--length-plan"
 LANGUAGES = "safety-notices--languages"
+INSPECTION = "harbour-wordpiece--inspection"
+INSPECTED = ("harbour-wordpiece", "harbour-bytelevel")
 DOMAIN = "inspection-notes--domain"
 # The document that each kind of page is rendered from.
-HELD = {LENGTH_PLAN: "plan.json", LANGUAGES: "languages.json", DOMAIN: "domain.json"}
+HELD = {
+    LENGTH_PLAN: "plan.json",
+    LANGUAGES: "languages.json",
+    DOMAIN: "domain.json",
+    INSPECTION: "inspection.json",
+}
 MODEL = "layers=4,width=256,heads=4,inner=1024"
 
 Render = Callable[[dict[str, Any]], str]
@@ -90,6 +98,9 @@ def build(folder: Path) -> dict[str, Render]:
     )
     vetted = vet_domain(candidates, against, folder / DOMAIN, overwrite=True)
     pages[DOMAIN] = partial(domain_page.render, worst=vetted.worst_words)
+    specs = [VocabularySpec(f"{VOCABULARIES}/{name}") for name in INSPECTED]
+    inspect(specs, folder / INSPECTION, width=256, overwrite=True)
+    pages[INSPECTION] = inspection_page.render
     return pages
 
 

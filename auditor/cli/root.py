@@ -14,6 +14,7 @@ from auditor.errors import AuditError
 _COMMANDS = {
     "assess": "auditor.cli.assess",
     "domain": "auditor.cli.domain",
+    "inspect": "auditor.cli.inspect",
     "languages": "auditor.cli.languages",
     "plan-length": "auditor.cli.plan_length",
 }

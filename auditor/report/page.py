@@ -88,6 +88,8 @@ def environment() -> Environment:
     )  # fmt: skip
     environment.filters |= {
         "clean": formatting.clean,
+        "code_points": lambda text: " ".join(f"U+{ord(c):04X}" for c in text),
+        "headline": answers.headline,
         "count": formatting.count,
         "interval": lambda figure, name: formatting.interval(name, figure) or "",
         "interval_or_note": _interval_or_note,

@@ -108,6 +108,17 @@ def domain_command(document: Json) -> str:
     return shlex.join([*words, *_options(settings)])
 
 
+def inspect_command(document: Json) -> str:
+    """Return the command line that makes this inspection, quoted for a POSIX shell."""
+    settings = document["settings"]
+    words = ["auditor", "inspect", *(own["source"] for own in document["vocabularies"])]
+    if settings["width"]:
+        words += ["--width", str(settings["width"])]
+    if settings["model"]:
+        words += ["--model", _shape(settings["model"])]
+    return shlex.join([*words, *_options(settings)])
+
+
 def _shape(model: Json) -> str:
     shape = {name: value for name, value in model.items() if value is not None}
     return ",".join(f"{name}={_spelled(value)}" for name, value in shape.items())
@@ -143,16 +154,21 @@ def command_notes(audit: Json) -> list[str]:
 
 def blocks(audit: Json) -> list[Block]:
     """Return titled lists of (name, text): corpus, vocabularies, settings, versions."""
-    corpus = audit["corpus"]
-    shown = ", ".join(corpus["sources"][:_SOURCES])
-    more = len(corpus["sources"]) - _SOURCES
-    sources = f"{shown} and {count(more)} more" if more > 0 else shown
     return [
-        ("Corpus", [("sources", sources), ("digest", corpus["digest"])]),
+        *_corpus(audit["corpus"]),
         *((f"Vocabulary {n}", _vocabulary(own)) for n, own in enumerate(audit["vocabularies"], 1)),
         ("Settings", [(name, _text(found)) for name, found in audit["settings"].items()]),
         ("Made with", [(name, _text(found)) for name, found in audit["made_with"].items()]),
     ]
+
+
+def _corpus(corpus: Json | None) -> Iterator[Block]:
+    if corpus is None:
+        return
+    shown = ", ".join(corpus["sources"][:_SOURCES])
+    more = len(corpus["sources"]) - _SOURCES
+    sources = f"{shown} and {count(more)} more" if more > 0 else shown
+    yield "Corpus", [("sources", sources), ("digest", corpus["digest"])]
 
 
 def _vocabulary(vocabulary: Json) -> list[tuple[str, str]]:

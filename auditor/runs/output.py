@@ -27,6 +27,7 @@ PLAN_FILES = frozenset({"plan.json", "plan.csv", "report.html"})
 LANGUAGE_FILES = frozenset(
     {"languages.json", "languages.csv", "scripts.csv", "doubtful_labels.jsonl", "report.html"}
 )
+INSPECTION_FILES = frozenset({"inspection.json", "entries.csv", "unreachable.csv", "report.html"})
 DOMAIN_FILES = frozenset(
     {"domain.json", "candidates.csv", "penalty.csv", "terms.csv", "words.csv", "report.html"}
 )

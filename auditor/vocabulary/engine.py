@@ -59,6 +59,9 @@ class Engine(Protocol):
     def encode(self, texts: list[str]) -> Encoding:
         """Return the tokens of ``texts``. May raise whatever the library raises."""
 
+    def ids_of(self, texts: list[str]) -> tuple[Ints, Ints]:
+        """Return the ids of ``texts`` end to end, and the bounds of each text among them."""
+
     def decode(self, ids: list[list[int]]) -> list[str]:
         """Return the texts that ``ids`` stand for, control tokens kept, clean-up off."""
 

@@ -60,6 +60,11 @@ class JoinedParts:
         encoded = self._engine.encode([*strings, *(texts[place] for place in alone.tolist())])
         return _taken_apart(encoded, texts, groups, alone)
 
+    def ids_of(self, texts: list[str]) -> tuple[Ints, Ints]:
+        """Return the ids of ``texts`` end to end, and the bounds of each text among them."""
+        found = self.encode(texts)
+        return found.ids, found.bounds
+
     def decode(self, ids: list[list[int]]) -> list[str]:
         """Return the texts that ``ids`` stand for."""
         return self._engine.decode(ids)

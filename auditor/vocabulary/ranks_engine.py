@@ -11,7 +11,7 @@ import tiktoken
 
 from auditor.errors import VocabularyError
 from auditor.vocabulary import bytelevel
-from auditor.vocabulary.engine import Bools, Encoding, Inventory, bounds_of, flags
+from auditor.vocabulary.engine import Bools, Encoding, Ints, Inventory, bounds_of, flags
 
 
 class RanksEngine:
@@ -67,6 +67,12 @@ class RanksEngine:
         shift = np.repeat(bounds_of([len(text) for text in texts])[:-1], np.diff(bounds))
         starts = character[ends - self._lengths[ids]] - shift
         return Encoding(ids, starts, character[ends - 1] + 1 - shift, bounds)
+
+    def ids_of(self, texts: list[str]) -> tuple[Ints, Ints]:
+        """Return the ids of ``texts`` end to end, and the bounds of each text among them."""
+        found = self._library.encode_ordinary_batch(texts)
+        bounds = bounds_of([len(ids) for ids in found])
+        return np.fromiter((i for own in found for i in own), np.int64, int(bounds[-1])), bounds
 
     def decode(self, ids: list[list[int]]) -> list[str]:
         """Return the texts that ``ids`` stand for."""

@@ -50,6 +50,15 @@ class SentencePieceEngine:
         changed.normalizer_spec.add_dummy_prefix = False
         return SentencePieceEngine(changed.SerializeToString(), where=self._where)
 
+    def plain(self) -> SentencePieceEngine:
+        """Return the same pieces without whatever alters text before they apply."""
+        changed = sentencepiece_model_pb2.ModelProto()
+        changed.CopyFrom(self.proto)
+        changed.normalizer_spec.add_dummy_prefix = False
+        changed.normalizer_spec.remove_extra_whitespaces = False
+        changed.normalizer_spec.precompiled_charsmap = b""
+        return SentencePieceEngine(changed.SerializeToString(), where=self._where)
+
     @property
     def family(self) -> str:
         """The family that the model names."""
@@ -73,6 +82,12 @@ class SentencePieceEngine:
             _bytes_to_points(texts, flat[:, 2], bounds),
         )
         return Encoding(flat[:, 0], starts, ends, bounds)
+
+    def ids_of(self, texts: list[str]) -> tuple[Ints, Ints]:
+        """Return the ids of ``texts`` end to end, and the bounds of each text among them."""
+        found = self._library.encode(texts)
+        bounds = bounds_of([len(ids) for ids in found])
+        return np.fromiter(chain.from_iterable(found), np.int64, int(bounds[-1])), bounds
 
     def decode(self, ids: list[list[int]]) -> list[str]:
         """Return the texts that ``ids`` stand for."""

@@ -65,6 +65,11 @@ class TokenizersEngine:
         )
 
     @property
+    def model_alone(self) -> Any:  # noqa: ANN401 - untyped there
+        """The model without what alters or splits a text before it."""
+        return self._library.model
+
+    @property
     def has_decoder(self) -> bool:
         """Whether the file names a decoder."""
         return self._library.decoder is not None
@@ -89,7 +94,7 @@ class TokenizersEngine:
         if not chosen.any():
             return self.encode_with_offsets(texts)
         likely = _picked(texts, chosen)
-        ids, bounds = self._tokens(likely)
+        ids, bounds = self.ids_of(likely)
         spelled = self._spelling.spells(ids, bounds, likely)
         if not spelled.all():
             lengths = np.diff(bounds)
@@ -102,7 +107,7 @@ class TokenizersEngine:
         parts = [(np.flatnonzero(chosen), found), (np.flatnonzero(~chosen), others)]
         return interleaved(len(texts), parts)
 
-    def _tokens(self, texts: list[str]) -> tuple[Ints, Ints]:
+    def ids_of(self, texts: list[str]) -> tuple[Ints, Ints]:
         """Return the ids of ``texts`` end to end, and the bounds of each text among them."""
         found = [
             encoding.ids

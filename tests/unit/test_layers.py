@@ -14,6 +14,7 @@ LAYERS = [
     {"text"},
     {"corpus", "vocabulary", "tallies"},
     {"encoding"},
+    {"inspection"},
     {"figures"},
     {"planning"},
     {"report"},
