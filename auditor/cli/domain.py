@@ -61,6 +61,14 @@ Examples:
     metavar="SHAPE",
     help="layers=12,width=768,heads=12,inner=3072 or a config.json: FLOPs a document, too.",
 )
+@click.option(
+    "--seed",
+    type=click.IntRange(min=0),
+    default=0,
+    show_default=True,
+    metavar="N",
+    help="Draws the words that are tried, and the changes of them.",
+)
 @shared.reading
 @click.option(
     "--out",
@@ -99,6 +107,7 @@ def command(
         width=options["width"],
         shape=parse_model(options["model"]) if options["model"] else None,
         terms=options["terms"],
+        seed=options["seed"],
     )
     shown = progress.for_terminal(quiet=options["quiet"])
     try:

@@ -96,6 +96,8 @@ def domain_command(document: Json) -> str:
         words += ["--general", general]
     if settings["general_text"]:
         words += ["--general-text", ",".join(settings["general_text"])]
+    if settings["seed"]:
+        words += ["--seed", str(settings["seed"])]
     if settings["terms"]:
         words += ["--terms", settings["terms"]]
     weights = {name: weight for name, weight in settings["weights"].items() if weight}

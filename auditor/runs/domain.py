@@ -8,11 +8,16 @@ from functools import partial
 from pathlib import Path
 from typing import Any
 
+import numpy as np
+
 from auditor.corpus import Glossary, Named, find_sources, read_glossary, resolve_fields
 from auditor.encoding.constructed import Constructed
 from auditor.encoding.documents import SeparationError
+from auditor.encoding.steadiness import costs_of, ways_of
 from auditor.errors import SettingsError
 from auditor.figures import sidebyside
+from auditor.figures.growth import growth
+from auditor.figures.steadiness import steadiness
 from auditor.figures.terms import terms_as_json
 from auditor.figures.values import Value
 from auditor.planning import fit, ranking
@@ -48,9 +53,13 @@ from auditor.runs.vetting import (
 from auditor.runs.yardstick import Yardstick
 from auditor.tallies.groups import ALL
 from auditor.tallies.terms import TermsTally
-from auditor.vocabulary import VocabularyFacts
+from auditor.tallies.wordcounts import WordCountsTally
+from auditor.text.perturbing import changes, share_of
+from auditor.vocabulary import VocabularyFacts, open_vocabulary
 
 Json = dict[str, Any]
+# Words that are drawn from the corpus to try how steadily they are broken.
+DRAWS = 5000
 Tell = Callable[[Progress], None] | None
 
 
@@ -60,7 +69,8 @@ class DomainWishes:
 
     ``general`` names the text that is the yardstick, or one earlier audit; ``general_text`` its
     text fields where they are others. ``weights`` are those of the ranking. ``width`` or ``shape``
-    say what model pays. ``terms`` is the file of a glossary.
+    say what model pays. ``terms`` is the file of a glossary. ``seed`` draws
+    words and changes of them.
     """
 
     general: tuple[str | Named | Audit, ...] = ()
@@ -69,6 +79,7 @@ class DomainWishes:
     width: int | None = None
     shape: ModelShape | None = None
     terms: Path | None = None
+    seed: int = 0
 
 
 @dataclass(frozen=True)
@@ -123,12 +134,15 @@ def _vetted(
         named = default_name(plan, [own.name for own in facts])
         folder = out or Path("reports") / f"{named}--domain"
         with OutputFolder(folder, overwrite=overwrite, files=DOMAIN_FILES) as output:
-            tallies, own, terms = _measured(plan, facts, glossary, processes, reading)
+            tallies, own, terms, words = _measured(plan, facts, glossary, processes, reading)
+            steady = _steadiness(plan, words, wishes.seed)
             if texts:
                 other = yardstick.general_plan(plan, texts, wishes.general_text)
                 general = yardstick.measured(other, progress)
             worst = worst_words(plan, facts, tallies)
-            vetting = _Vetting(plan, wishes, reading, facts, tallies, own, general, terms)
+            vetting = _Vetting(
+                plan, wishes, reading, facts, tallies, own, general, terms, words, steady
+            )
             document = vetting.document()
             _write(output, document, worst)
             return WrittenDomain(document, worst, folder, output.finish())
@@ -156,8 +170,8 @@ def _measured(
     glossary: Glossary | None,
     processes: Processes[DomainOutcome, DomainFinished],
     reading: Reading,
-) -> tuple[AuditTallies, DomainTallies, list[Json]]:
-    """Return the tallies of the whole corpus, and what each vocabulary makes of the terms."""
+) -> tuple[AuditTallies, DomainTallies, list[Json], WordCountsTally]:
+    """Return the tallies of the whole corpus, what each vocabulary makes of terms, and words."""
     tallies, own = empty_tallies(plan, facts), DomainTallies.empty(len(facts))
     for found in processes.measured(batches(plan, reading)):
         tallies.merge_documents(found.corpus, found.audit)
@@ -165,16 +179,34 @@ def _measured(
     refuse_empty(tallies.measured, tallies.corpus.set_aside, reading.names)
     terms: list[TermsTally] = []
     constructed: list[list[Constructed]] = []
+    words = WordCountsTally()
     for finished in processes.finished():
         tallies.merge_contents(finished.audit.contents)
         constructed = finished.constructed
+        words.merge(finished.words)
         for ours, theirs in zip(terms, finished.terms, strict=bool(terms)):
             ours.merge(theirs)
         terms = terms or finished.terms
     if glossary is None:
-        return tallies, own, []
+        return tallies, own, [], words
     pairs = zip(constructed, terms, strict=True)
-    return tallies, own, [terms_as_json(glossary, *pair) for pair in pairs]
+    return tallies, own, [terms_as_json(glossary, *pair) for pair in pairs], words
+
+
+def _steadiness(plan: Plan, words: WordCountsTally, seed: int) -> list[Json]:
+    """Return how steadily each vocabulary breaks words drawn from the corpus."""
+    total = sum(r * n for r, n in words.frequencies().items())
+    drawn = words.drawn(DRAWS, total, share_of(seed))
+    if not drawn:
+        return []
+    altered = changes(drawn, seed)
+    found = []
+    for spec in plan.vocabularies:
+        vocabulary = open_vocabulary(spec)
+        ways = ways_of(vocabulary, drawn, parse_control=plan.parse_control)
+        held = steadiness(drawn, ways, costs_of(vocabulary, drawn, altered))
+        found.append(held if plan.excerpts else {**held, "worst": []})
+    return found
 
 
 def _write(output: OutputFolder, document: Json, worst: WorstWords) -> None:
@@ -205,6 +237,8 @@ class _Vetting:
         own: DomainTallies,
         general: Yardstick | None,
         terms: list[Json],
+        words: WordCountsTally,
+        steady: list[Json],
     ) -> None:
         settings: Json = {
             "fields": reading.fields.as_json(),
@@ -213,13 +247,14 @@ class _Vetting:
             "general_text": list(wishes.general_text or ()),
             "terms": None if wishes.terms is None else str(wishes.terms),
             "weights": wishes.weights,
+            "seed": wishes.seed,
             "width": wishes.width,
             "model": None if wishes.shape is None else asdict(wishes.shape),
         }
         self._audit = assemble(plan, facts, tallies, reading.names, settings)
         self._wishes, self._facts = wishes, facts
         self._tallies, self._own, self._general = tallies, own, general
-        self._terms = terms
+        self._terms, self._words, self._steady = terms, words, steady
 
     def document(self) -> Json:
         """Return the whole document."""
@@ -239,6 +274,11 @@ class _Vetting:
                 for facts, own in zip(self._facts, self._terms, strict=bool(self._terms))
                 for row in own["terms"]
             ],
+            "steadiness": [
+                {"vocabulary": facts.name, **own}
+                for facts, own in zip(self._facts, self._steady, strict=bool(self._steady))
+            ],
+            "growth": self._growth(),
             "ranking": self._ranking(candidates),
         }
         document["verdict"] = domain_answers.verdict(document)
@@ -313,6 +353,15 @@ class _Vetting:
             )
             for row in yardstick.penalty(held, slices, limit)
         ]
+
+    def _growth(self) -> Json:
+        """Return the growth of distinct words, and of used entries of each vocabulary."""
+        entries = []
+        for facts, contents in zip(self._facts, self._tallies.contents, strict=True):
+            times, ids = np.unique(contents.usage.occurrences, return_counts=True)
+            used = {t: n for t, n in zip(times.tolist(), ids.tolist(), strict=True) if t}
+            entries.append({"vocabulary": facts.name, **growth(used)})
+        return {"words": growth(self._words.frequencies()), "entries": entries}
 
     def _ranking(self, candidates: list[Json]) -> Json:
         def by_name(*path: str) -> dict[str, Any]:

@@ -5,6 +5,7 @@ from __future__ import annotations
 from dataclasses import dataclass, field, replace
 
 import numpy as np
+import pyarrow as pa
 
 from auditor.corpus import Batch, Glossary
 from auditor.encoding.composed import COLUMNS as FORM_COLUMNS
@@ -19,9 +20,12 @@ from auditor.tallies.groups import groupings
 from auditor.tallies.moments import MomentsTally
 from auditor.tallies.rows import RowsTally
 from auditor.tallies.terms import TermsTally
+from auditor.tallies.wordcounts import WordCountsTally
 from auditor.text.halves import halves_of
+from auditor.text.slices import ranges, strings
 from auditor.text.stretch import Stretch
 from auditor.vocabulary import VocabularyFacts
+from auditor.vocabulary.engine import Ints
 
 # A field that no record has: which half of the corpus a document belongs to.
 HALF = "\0half"
@@ -67,8 +71,16 @@ class DomainFinished:
     """
 
     audit: Finished
+    words: WordCountsTally
     constructed: list[list[Constructed]]
     terms: list[TermsTally]
+
+
+def words_of(stretch: Stretch) -> tuple[pa.Array, Ints]:
+    """Return the distinct words of ``stretch`` and how often each occurs; shape (words,) each."""
+    starts, lengths = stretch.words.starts, stretch.words.ends - stretch.words.starts
+    counted = strings(stretch.points[ranges(starts, lengths)], lengths).value_counts()
+    return counted.field("values"), np.asarray(counted.field("counts"))
 
 
 class DomainMeasurer:
@@ -78,6 +90,7 @@ class DomainMeasurer:
         self._plan = plan
         self._glossary = glossary
         self._audit = Measurer(plan, kept=("tokens", *_LOST))
+        self._words = WordCountsTally()
         self._terms = (
             None
             if glossary is None
@@ -96,6 +109,7 @@ class DomainMeasurer:
         """Return what an audit hands over once all batches are measured, and the terms."""
         return DomainFinished(
             self._audit.finish(),
+            self._words,
             self._constructed(),
             [] if self._terms is None else self._terms.tallies,
         )
@@ -117,8 +131,10 @@ class DomainMeasurer:
         own = DomainTallies.empty(len(self.facts))
         if outcome.batch.texts:
             self._add(own, outcome)
+            stretch = Stretch(outcome.batch.texts, words=self._plan.words)
+            self._words.add(*words_of(stretch))
             if self._terms is not None:
-                self._terms.measure(Stretch(outcome.batch.texts))
+                self._terms.measure(stretch)
         return DomainOutcome(len(batch), outcome.corpus, outcome.documents, own)
 
     def _add(self, own: DomainTallies, outcome: Outcome) -> None:

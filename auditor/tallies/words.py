@@ -56,6 +56,13 @@ def table_of(rows: Sequence[BrokenWord]) -> pa.Table:
     return pa.Table.from_arrays(arrays, schema=_ROW)
 
 
+def row_table(words: pa.Array) -> pa.Table:
+    """Return rows of ``words`` by themselves, neither broken nor unknown."""
+    none = pa.array(np.zeros(len(words), dtype=np.int64))
+    empty = pa.array([""] * len(words), pa.string())
+    return pa.Table.from_arrays([words.cast(pa.string()), empty, none, none], schema=_ROW)
+
+
 class WordsTally(Tally):
     """Occurrences of each ``BrokenWord``; about ``in_memory`` of them are held in memory."""
 
@@ -98,14 +105,14 @@ class WordsTally(Tally):
         if len(self._spilled) < _MOST_FILES:
             self._spilled.append(_written([self._gather().sort_by(_ORDER)]))
         else:
-            whole = _written(self._tables())
+            whole = _written(self.tables())
             _close(self._spilled)
             self._spilled.append(whole)
         self._held, self._waiting = [], 0
 
     def rows(self) -> Iterator[tuple[BrokenWord, int]]:
         """Yield every row with its count, in sorted order, whatever lies in memory or on disk."""
-        for table in self._tables():
+        for table in self.tables():
             yield from _rows(table)
 
     def largest(
@@ -117,7 +124,7 @@ class WordsTally(Tally):
         rows of a negative weight are left out.
         """
         held = _COUNTED.empty_table()
-        for table in self._tables():
+        for table in self.tables():
             # Both are in sorted order among equals, and no row of the one comes after the other's.
             both = pa.concat_tables([held, table])
             weights = weigh(both)
@@ -125,7 +132,7 @@ class WordsTally(Tally):
             held = both.take(order[weights[order] >= 0])
         return list(_rows(held))
 
-    def _tables(self) -> Iterator[pa.Table]:
+    def tables(self) -> Iterator[pa.Table]:
         """Yield every row with its count, in sorted order, some rows at a time."""
         parts = [*map(_read, self._spilled), self._gather().sort_by(_ORDER)]
         edges = _edges(parts, max(1, self._bound // len(parts)))
@@ -142,7 +149,7 @@ class WordsTally(Tally):
                 yield _summed(slices).sort_by(_ORDER)
 
     def _add(self, other: WordsTally) -> None:
-        for table in other._tables():
+        for table in other.tables():
             self.take(table)
 
     def counts(self) -> State:
@@ -156,7 +163,7 @@ class WordsTally(Tally):
     def __reduce__(self) -> tuple[object, ...]:
         """Travel between processes by way of a file: all rows may be more than memory holds."""
         with tempfile.NamedTemporaryFile(prefix=_PREFIX, delete=False) as file:
-            _write(file, self._tables())
+            _write(file, self.tables())
         return _received, (self._bound, file.name)
 
 

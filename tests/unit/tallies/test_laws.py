@@ -10,6 +10,7 @@ import random
 from importlib import import_module
 
 import numpy as np
+import pyarrow as pa
 import pytest
 from hypothesis import given
 from hypothesis import strategies as st
@@ -27,6 +28,7 @@ from auditor.tallies.rows import RowsTally
 from auditor.tallies.terms import TermRow, TermsTally
 from auditor.tallies.usage import UsageTally
 from auditor.tallies.whitespace import COLUMNS, WhitespaceTally
+from auditor.tallies.wordcounts import WordCountsTally
 from auditor.tallies.words import BrokenWord, WordsTally
 
 # One invented document: tokens, words, language, origin, text.
@@ -78,6 +80,11 @@ def fill_usage(tally, rows, _):
 def fill_words(tally, rows, _):
     for row in rows:
         tally.add(BrokenWord(row[4], row[2], row[1], 0), 1)
+
+
+def fill_word_counts(tally, rows, _):
+    counts = np.array([row[1] for row in rows], dtype=np.int64)
+    tally.add(pa.array([row[4] for row in rows], pa.string()), counts)
 
 
 def fill_terms(tally, rows, _):
@@ -138,6 +145,7 @@ TALLIES = {
         fill_parallel,
     ),
     WordsTally: (lambda: WordsTally(in_memory=2), None, fill_words),
+    WordCountsTally: (lambda: WordCountsTally(in_memory=2), None, fill_word_counts),
     TermsTally: (lambda: TermsTally("one"), lambda: TermsTally("another"), fill_terms),
     CharactersTally: (CharactersTally, None, fill_characters),
     FlawsTally: (FlawsTally, None, fill_flaws),
