@@ -43,6 +43,7 @@ HEADINGS = {
     "terms": "What becomes of the terms",
     "choice": "Which comes first",
     "help": "What would help",
+    "sample": "Is the corpus large enough",
 }
 
 
@@ -54,6 +55,7 @@ def verdict(document: Json) -> dict[str, list[str]]:
         "terms": (_terms,),
         "choice": (_order,),
         "help": (_help,),
+        "sample": (_sample,),
     }
     found = {
         about: [told for part in own for told in part(document)] for about, own in parts.items()
@@ -206,6 +208,20 @@ def _help(document: Json) -> Iterator[str]:
     told = [remedy(own) for own in first["remedies"]]
     if told:
         yield f"What would help {named(first)}: {'; '.join(told)}."
+
+
+def _sample(document: Json) -> Iterator[str]:
+    held = document["growth"]["words"]
+    if held["next_is_new"]["value"] is None:
+        return
+    yield f"The next word is one not seen yet with a probability of {shared(held['next_is_new'])}."
+    steady = {own["vocabulary"]: own["ways"]["all"] for own in document["steadiness"]}
+    for own in ordered(document):
+        if own["name"] in steady:
+            yield (
+                f"{named(own)} breaks {shared(steady[own['name']]['one'])} of words drawn in one"
+                " way, whatever stands beside them and in any case."
+            )
 
 
 def remedy(own: Json) -> str:

@@ -20,6 +20,12 @@ _TERMS = 100
 _DRAWN = ("fertility", "pieces_per_word", "continued_words", "bytes_per_token")
 
 
+_WAYS = {
+    "position": "the place: start of the text, after a space, after a line end",
+    "punctuation": "punctuation beside it: a bracket, a full stop, a comma",
+    "case": "case: as written, lower, title, upper",
+    "all": "all of these",
+}
 _SHARES = {
     "by_term": "each term once",
     "by_weight": "by weight",
@@ -50,6 +56,7 @@ def render(document: Json, worst: WorstWords) -> str:
             if document["general"]
             else [],
             worst_terms=domain_answers.worst_terms(document)[:_TERMS],
+            drawn_growth=_growth(document),
             word_tables=[table for name, rows in worst for table in word_tables(name, rows)],
             command=repeating.domain_command(document),
             **script_of("page.js"),
@@ -78,11 +85,20 @@ def _environment() -> Environment:
         "headings": domain_answers.HEADINGS,
         "drawn": _DRAWN,
         "shares": _SHARES,
+        "ways_told": _WAYS,
         "state_names": _STATES,
         "value_of": value,
         "known": FIGURES,
     }
     return made
+
+
+def _growth(document: Json) -> Markup | None:
+    """Draw the distinct words expected in a part of the corpus."""
+    curve = [(m, v) for m, v in document["growth"]["words"]["curve"] if v >= 1]
+    if len(curve) < 2:
+        return None
+    return row_charts.growing("growth", "Distinct words by words read", curve)
 
 
 def _penalties(document: Json) -> dict[str, list[Json]]:

@@ -84,8 +84,30 @@ def bars(key: str, title: str, rows: Sequence[tuple[str, int, str]], unit: str) 
 
 def by_rank(key: str, title: str, ranks: Sequence[tuple[int, int]]) -> Markup:
     """Draw occurrences by rank, both by powers of ten; ``ranks`` holds (rank, occurrences)."""
-    across = max(1, math.ceil(math.log10(max(ranks[-1][0], 2))))
-    upwards = max(1, math.ceil(math.log10(max(ranks[0][1], 2))))
+    said = [f"rank {count(rank)}: {count(times)} occurrences" for rank, times in ranks]
+    told = (
+        f"The most frequent entry occurs {count(ranks[0][1])} times, the one at rank"
+        f" {count(ranks[-1][0])} {count(ranks[-1][1])} times."
+    )
+    return _curve(key, title, told, ranks, said)
+
+
+def growing(key: str, title: str, points: Sequence[tuple[int, float]]) -> Markup:
+    """Draw distinct kinds by occurrences read, both by powers of ten, from (read, distinct)."""
+    said = [f"{count(m)} read: {count(round(v))} distinct" for m, v in points]
+    return _curve(key, title, f"In all {said[-1]}.", points, said)
+
+
+def _curve(
+    key: str,
+    title: str,
+    told: str,
+    points: Sequence[tuple[int, float]],
+    said: Sequence[str],
+) -> Markup:
+    """Draw points of at least 1 joined by lines, each of which says what it begins with."""
+    across = max(1, math.ceil(math.log10(max(points[-1][0], 2))))
+    upwards = max(1, math.ceil(math.log10(max(*(v for _, v in points), 2))))
 
     def x(rank: float) -> float:
         return _CURVE_LEFT + math.log10(rank) / across * (_CURVE_RIGHT - _CURVE_LEFT)
@@ -97,18 +119,13 @@ def by_rank(key: str, title: str, ranks: Sequence[tuple[int, int]]) -> Markup:
         *(_power(x(10**n), n, upright=True) for n in range(across + 1)),
         *(_power(y(10**n), n, upright=False) for n in range(upwards + 1)),
     ]
-    for (rank, times), (after, less) in pairwise(ranks):
-        said = tag("title", f"rank {count(rank)}: {count(times)} occurrences")
+    for words, ((read, value), (after, other)) in zip(said[:-1], pairwise(points), strict=True):
         parts.append(
             tag(
-                "line", said, x1=f"{x(rank):.2f}%", x2=f"{x(after):.2f}%", y1=f"{y(times):.1f}",
-                y2=f"{y(less):.1f}", class_="interval",
+                "line", tag("title", words), x1=f"{x(read):.2f}%", x2=f"{x(after):.2f}%",
+                y1=f"{y(value):.1f}", y2=f"{y(other):.1f}", class_="interval",
             )
         )  # fmt: skip
-    told = (
-        f"The most frequent entry occurs {count(ranks[0][1])} times, the one at rank"
-        f" {count(ranks[-1][0])} {count(ranks[-1][1])} times."
-    )
     return drawing(key, _CURVE_HEIGHT + 22, title, told, *parts)
 
 
