@@ -18,29 +18,33 @@ _LATIN = "A-Za-zÀ-ÖØ-öø-ɏ"
 _RUN = f"[{_LATIN}0-9_]"
 _BEGIN, _END = f"(?<!{_RUN})", f"(?!{_RUN})"
 
+
+def _begun(*alternatives: str) -> str:
+    """Return a pattern of ``alternatives``, none of which begins within a run."""
+    return f"{_BEGIN}(?:{'|'.join(alternatives)})"
+
+
 # RFC 3986 sections 2.2 and 2.3; characters beyond ASCII by RFC 3987. A full stop, comma or bracket
 # at the end belongs to the sentence around the URL.
 _URL_CHARACTER = r"(?:[\w\-.~:/?#\[\]@!$&'()*+,;=%])"
 _URL_LAST = r"[\w/#=&%~+\-$@*]"
 _HOST_NAME = r"[A-Za-z0-9](?:[A-Za-z0-9\-]{0,62})(?:\.[A-Za-z0-9\-]{1,63}){1,8}"
 _OCTET = r"(?:25[0-5]|2[0-4][0-9]|1[0-9][0-9]|[1-9]?[0-9])"
-_URLS = "|".join(
-    (
-        # RFC 3986 section 3: a scheme and an authority, or a well-known scheme without one.
-        rf"{_BEGIN}[A-Za-z][A-Za-z0-9+.\-]{{0,31}}://"
-        rf"(?:(?:\[[0-9A-Fa-f:.]{{2,45}}\])?{_URL_CHARACTER}*{_URL_LAST}|\[[0-9A-Fa-f:.]{{2,45}}\])",
-        rf"{_BEGIN}(?:mailto|news|tel|urn|doi|geo|sip|sips|data):{_URL_CHARACTER}*{_URL_LAST}",
-        rf"{_BEGIN}www\.{_HOST_NAME}(?:[/?#:]{_URL_CHARACTER}*{_URL_LAST})?",
-        # RFC 5322 section 3.4.1, dot-atoms; the local part has 64 octets at most (RFC 5321).
-        rf"{_BEGIN}[A-Za-z0-9_][\w!#$%&'*+/=?^`{{|}}~.\-]{{0,63}}@{_HOST_NAME}",
-        # RFC 3986 section 3.2.2, IPv4address, with the length of a prefix (RFC 4632) or a port.
-        rf"{_BEGIN}(?<![0-9]\.)(?:{_OCTET}\.){{3}}{_OCTET}(?:/[0-9]{{1,2}}|:[0-9]{{1,5}})?"
-        rf"(?!\.?{_RUN})",
-        # RFC 4291 section 2.2; shortened ones hold a digit, as a::b is a name in programs.
-        rf"{_BEGIN}(?<!:)(?:[0-9A-Fa-f]{{1,4}}:){{7}}[0-9A-Fa-f]{{1,4}}(?![\w:])",
-        rf"{_BEGIN}(?<!:)(?=[0-9A-Fa-f:]{{0,39}}::)(?=[A-Fa-f:]{{0,39}}[0-9])"
-        r"(?:[0-9A-Fa-f]{0,4}:){2,7}[0-9A-Fa-f]{0,4}(?![\w:])",
-    )
+_URLS = _begun(
+    # RFC 3986 section 3: a scheme and an authority, or a well-known scheme without one.
+    rf"[A-Za-z][A-Za-z0-9+.\-]{{0,31}}://"
+    rf"(?:(?:\[[0-9A-Fa-f:.]{{2,45}}\])?{_URL_CHARACTER}*{_URL_LAST}|\[[0-9A-Fa-f:.]{{2,45}}\])",
+    rf"(?:mailto|news|tel|urn|doi|geo|sip|sips|data):{_URL_CHARACTER}*{_URL_LAST}",
+    rf"www\.{_HOST_NAME}(?:[/?#:]{_URL_CHARACTER}*{_URL_LAST})?",
+    # RFC 5322 section 3.4.1, dot-atoms; the local part has 64 octets at most (RFC 5321).
+    rf"[A-Za-z0-9_][\w!#$%&'*+/=?^`{{|}}~.\-]{{0,63}}@{_HOST_NAME}",
+    # RFC 3986 section 3.2.2, IPv4address, with the length of a prefix (RFC 4632) or a port.
+    rf"(?<![0-9]\.)(?:{_OCTET}\.){{3}}{_OCTET}(?:/[0-9]{{1,2}}|:[0-9]{{1,5}})?"
+    rf"(?!\.?{_RUN})",
+    # RFC 4291 section 2.2; shortened ones hold a digit, as a::b is a name in programs.
+    r"(?<!:)(?:[0-9A-Fa-f]{1,4}:){7}[0-9A-Fa-f]{1,4}(?![\w:])",
+    r"(?<!:)(?=[0-9A-Fa-f:]{0,39}::)(?=[A-Fa-f:]{0,39}[0-9])"
+    r"(?:[0-9A-Fa-f]{0,4}:){2,7}[0-9A-Fa-f]{0,4}(?![\w:])",
 )
 
 _CLOCK = r"(?:[01]?[0-9]|2[0-4]):[0-5][0-9](?::(?:[0-5][0-9]|60)(?:[.,][0-9]{1,9})?)?"
@@ -77,10 +81,14 @@ PAIRS = ("mg", "kg", "km", "cm", "mm", "nm", "ml", "ms", "Hz", "MW", "GB", "MB",
 BEGINNINGS = ("mb", "mm", "MP", "MW", "GW", "MH", "GH")
 _UNITS = rf"(?<=[0-9]){_AFTER_NUMBER}|{_BEGIN}(?:{_ALONE}){_END}"
 
+# RFC 9562 section 4.
+_HEX = "[0-9A-Fa-f]"
+_UUID = rf"{_HEX}{{8}}(?:-{_HEX}{{4}}){{3}}-{_HEX}{{12}}{_END}"
+
 # Signed where no word or number stands before the sign; grouped by comma, full stop or apostrophe;
 # ISO 80000-1 section 7.3 for the decimal sign, ISO 6093 (NR3) for the exponent.
 _NUMBER = (
-    rf"{_BEGIN}(?<![0-9][.,])(?:(?<![\w)\]])[+\-−])?(?:"
+    rf"{_BEGIN}(?<![0-9][.,])(?!{_UUID})(?:(?<![\w)\]])[+\-−])?(?:"
     r"[0-9]{1,3}(?:,[0-9]{3}){1,8}(?:\.[0-9]{1,99})?|[0-9]{1,3}(?:\.[0-9]{3}){2,8}(?:,[0-9]{1,99})?"
     r"|[0-9]{1,3}(?:['’][0-9]{3}){1,8}(?:\.[0-9]{1,99})?"
     r"|[0-9]{1,200}(?:[.,][0-9]{1,200})?|\.[0-9]{1,200})(?:[eE][+\-−]?[0-9]{1,4})?"
@@ -88,29 +96,26 @@ _NUMBER = (
     rf"(?:{_END}(?![.\-][0-9])|(?={_AFTER_NUMBER}))"
 )
 
-_HEX = "[0-9A-Fa-f]"
 _NAME = r"[\w.\-+@]"
 _SUFFIXES = (
     "py|js|ts|c|h|cc|cpp|hpp|rs|go|java|rb|sh|txt|md|rst|csv|tsv|json|jsonl|xml|html|css|yaml|yml"
     "|toml|ini|cfg|conf|log|pdf|png|jpg|svg|zip|gz|tar|so|dll|exe|dtsi?|bin|dat|parquet|sql"
 )
-# RFC 9562 section 4 (UUIDs); versions as in Semantic Versioning 2.0.0; IEEE 1003.1 section 4.13
+# Versions as in Semantic Versioning 2.0.0; IEEE 1003.1 section 4.13
 # (path names). Names of programs: common practice, no standard.
-_IDENTIFIERS = "|".join(
-    (
-        rf"{_BEGIN}{_HEX}{{8}}(?:-{_HEX}{{4}}){{3}}-{_HEX}{{12}}{_END}",
-        rf"{_BEGIN}(?:~|\.{{1,2}}|[A-Za-z]:)(?:[/\\]{_NAME}{{1,255}})+[/\\]?",
-        rf"{_BEGIN}(?<![/<.\\])(?:/{_NAME}{{1,255}}){{2,}}/?",
-        rf"{_BEGIN}(?<![/<.\-@+])[\w.\-+]{{1,64}}(?:/{_NAME}{{1,255}}){{2,}}/?",
-        rf"{_BEGIN}(?<![.\-])[\w\-]{{1,64}}(?:/[\w\-]{{1,64}})?(?:\.[\w\-]{{1,16}})?\.(?:{_SUFFIXES}){_END}",
-        rf"{_BEGIN}(?<!\.)v?[0-9]{{1,9}}(?:\.[0-9]{{1,9}}){{2,5}}(?:[\-+][0-9A-Za-z.\-+]{{0,64}}[0-9A-Za-z])?{_END}",
-        rf"{_BEGIN}v[0-9]{{1,9}}\.[0-9]{{1,9}}{_END}",
-        rf"{_BEGIN}[0-9]{{1,9}}(?:-[0-9]{{1,9}}){{2,9}}{_END}",
-        # Letters and digits mixed, low lines, or a capital after a small letter.
-        rf"{_BEGIN}(?:_{{0,3}}[{_LATIN}]{{1,200}}[0-9_]|_{{0,3}}[0-9]{{1,200}}[{_LATIN}_]"
-        rf"|[{_LATIN}]{{0,200}}?[a-zß-öø-ÿ][A-ZÀ-ÖØ-Þ])(?:{_RUN})*",
-        rf"{_BEGIN}_{{1,3}}[{_LATIN}0-9]{_RUN}*",
-    )
+_IDENTIFIERS = _begun(
+    _UUID,
+    rf"(?:~|\.{{1,2}}|[A-Za-z]:)(?:[/\\]{_NAME}{{1,255}})+[/\\]?",
+    rf"(?<![/<.\\])(?:/{_NAME}{{1,255}}){{2,}}/?",
+    rf"(?<![/<.\-@+])[\w.\-+]{{1,64}}(?:/{_NAME}{{1,255}}){{2,}}/?",
+    rf"(?<![.\-])[\w\-]{{1,64}}(?:/[\w\-]{{1,64}})?(?:\.[\w\-]{{1,16}})?\.(?:{_SUFFIXES}){_END}",
+    rf"(?<!\.)v?[0-9]{{1,9}}(?:\.[0-9]{{1,9}}){{2,5}}(?:[\-+][0-9A-Za-z.\-+]{{0,64}}[0-9A-Za-z])?{_END}",
+    rf"v[0-9]{{1,9}}\.[0-9]{{1,9}}{_END}",
+    rf"[0-9]{{1,9}}(?:-[0-9]{{1,9}}){{2,9}}{_END}",
+    # Letters and digits mixed, low lines, or a capital after a small letter.
+    rf"(?:_{{0,3}}[{_LATIN}]{{1,200}}[0-9_]|_{{0,3}}[0-9]{{1,200}}[{_LATIN}_]"
+    rf"|[{_LATIN}]{{0,200}}?[a-zß-öø-ÿ][A-ZÀ-ÖØ-Þ])(?:{_RUN})*",
+    rf"_{{1,3}}[{_LATIN}0-9]{_RUN}*",
 )
 
 _OPERAND = r"(?:[0-9]{1,20}(?:\.[0-9]{1,20})?[A-Za-z]?|[A-Za-z][0-9]?)"
@@ -152,6 +157,11 @@ def _repeated() -> str:
     return rf"[|+:]{{0,9}}(?P<rule>[\-=])(?P=rule){{2,}}[|+:\-=]*|(?P<mark>{mark})(?P=mark){{2,}}"
 
 
+# Where no kind can begin, passed over at once: within a word, and a long word before a mark that
+# belongs to no pattern that begins with a letter.
+_PASSED = rf"(?<=[{_LATIN}])[{_LATIN}]+|{_BEGIN}[A-Za-z][a-z]{{4,63}}(?=[\n,;()\[\]\"])"
+
+
 @cache
 def pattern() -> re.Pattern[str]:
     """Return the one pattern: at each place the first kind in this order that matches is taken."""
@@ -165,4 +175,5 @@ def pattern() -> re.Pattern[str]:
         "repeated_punctuation": _repeated(),
         "identifiers": _IDENTIFIERS,
     }
-    return re.compile("|".join(f"(?P<{kind}>{text})" for kind, text in kinds.items()))
+    named = "|".join(f"(?P<{kind}>{text})" for kind, text in kinds.items())
+    return re.compile(f"{_PASSED}|{named}")

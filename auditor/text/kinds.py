@@ -128,10 +128,11 @@ def _of_points(points: Points) -> Kinds:
     _mark_single_spaces(points, kinds, blank)
     ink = ~(ends | blank)
     starts, stops = runs_of(ink, np.array([0, len(points)]))
-    triggers = np.concatenate(([0], np.cumsum(_triggers(points, kinds, ink))))
+    triggers = np.flatnonzero(_triggers(points, kinds, ink))
     _join_words(points, kinds)
-    chosen = triggers[stops] > triggers[starts]
-    if chosen.any():
+    if len(triggers) and len(starts):
+        chosen = np.zeros(len(starts), dtype=np.bool_)
+        chosen[np.searchsorted(starts, triggers, side="right") - 1] = True
         starts, stops = starts[chosen], stops[chosen]
         form, texts = distinct(points, starts, stops)
         held, begins = _of_items(texts)

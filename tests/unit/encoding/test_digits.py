@@ -7,7 +7,6 @@ so that the pattern alone decides.
 
 from __future__ import annotations
 
-import json
 from itertools import product
 
 import pytest
@@ -69,7 +68,9 @@ def test_a_merge_decides_without_a_pattern(tmp_path):
     assert found.rules["start"] == "irregular"
     assert found.positions["start"] == 0
     # The first digits are joined before others only as their pair stands first among the merges.
-    assert sum(found.by_length["start"][7].values()) == sum(found.by_length["after a letter"][7].values())
+    assert sum(found.by_length["start"][7].values()) == sum(
+        found.by_length["after a letter"][7].values()
+    )
 
 
 def test_numbers_are_the_same_in_every_run():
@@ -95,4 +96,4 @@ def test_in_threes(number, expected):
     ],
 )
 def test_rules(groups, expected):
-    assert rule({sum(g): {g: 1} for g in groups} | {99: {g: 1 for g in groups}}) == expected
+    assert rule({sum(g): {g: 1} for g in groups} | {99: dict.fromkeys(groups, 1)}) == expected

@@ -18,9 +18,8 @@ from auditor.text.kinds import KINDS as TEXT_KINDS
 from auditor.text.kinds import kinds_of
 from auditor.text.stretch import Stretch
 from auditor.text.whitespace import find_runs
-from tests.unit.encoding.random_vocabularies import KINDS
+from tests.unit.encoding.random_vocabularies import KINDS, descriptions
 from tests.unit.encoding.test_pieces import data_for, opened
-from tests.unit.encoding.random_vocabularies import descriptions
 from tests.unit.small_vocabularies import byte_level
 
 ALPHABET = [*"aAbmg15.,:/-=_(' \n\t", "mg", "\r\n", "é", "\u0301", "<s>", "===", "👍", "\u200d"]
