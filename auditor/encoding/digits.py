@@ -66,7 +66,7 @@ def digit_groups(vocabulary: Vocabulary, given: Iterable[str] = ()) -> DigitGrou
     return DigitGroups(
         {name: rule(lengths) for name, lengths in by_length.items()},
         by_length,
-        _different({name: groups for name, groups in grouped.items()}),
+        _different(grouped),
         _different({name: groups for name, (groups, _) in parted.items()}),
         {name: tokens for name, (_, tokens) in parted.items()},
         len(numbers),

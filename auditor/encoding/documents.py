@@ -60,7 +60,8 @@ class Tale:
 class Documents:
     """Measures stretches of documents; ``sink`` takes in what texts hold.
 
-    With ``whole`` no document is cut; with ``kinds`` kinds of text are counted too. Which way is taken never changes a figure.
+    With ``whole`` no document is cut; with ``kinds`` kinds of text are counted too. Which way is
+    taken never changes a figure.
     """
 
     def __init__(

@@ -86,8 +86,8 @@ class WholeTexts:
     """Measures texts under one vocabulary, each encoded whole.
 
     ``separation`` is given for texts that are later parts of documents: it names the engine for
-    them, and the tokens that stand before theirs when they are decoded. With ``kinds`` the columns of
-    kinds of text are added.
+    them, and the tokens that stand before theirs when they are decoded. With ``kinds`` the
+    columns of kinds of text are added.
     """
 
     def __init__(

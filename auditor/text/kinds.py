@@ -59,11 +59,11 @@ _BASE = (
 )
 # Characters that may begin or mark what a pattern holds, whatever stands beside them.
 _TRIGGERS = (
-    r"[0-9@\\_/~=<>\^°℃℉µ\u20e3\p{Emoji_Presentation}\p{Regional_Indicator}"
-    r"\p{Extended_Pictographic}\p{Sm}\uFE0F\U0001f3fb-\U0001f3ff]"
+    r"[0-9_°℃℉µ\u20e3\p{Emoji_Presentation}\p{Regional_Indicator}"
+    r"\p{Extended_Pictographic}\uFE0F\U0001f3fb-\U0001f3ff]"
 )
 # Marked only before a character that is no whitespace.
-_BEFORE_INK = r"[.:]"
+_BEFORE_INK = r"[.:@\\/=<>\^≤≥≈≠]"
 _SPACE = ord(" ")
 # UAX #29 MidLetter and the joiners: within a word between two of its letters.
 _WITHIN = r"['’\u200c\u200d\u00ad]"
@@ -101,7 +101,7 @@ def _pairs() -> Kinds:
     """Return by two characters of ASCII: 1 where units begin with them, 2 where they are one."""
     found = np.zeros(128 * 128, dtype=np.uint8)
     for bit, pairs in ((1, BEGINNINGS), (2, PAIRS)):
-        found[[ord(left) * 128 + ord(right) for left, right in pairs]] |= bit
+        found[[ord(pair[0]) * 128 + ord(pair[1]) for pair in pairs]] |= bit
     return found
 
 

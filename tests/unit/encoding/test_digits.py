@@ -28,7 +28,7 @@ def split_by(pattern, folder, joins=()):
     pairs = ["".join(pair) for pair in product(digits, repeat=2)]
     threes = ["".join(three) for three in product(digits, repeat=3)]
     entries = [*CHARACTER_OF_BYTE.values(), *pairs, *threes, *("".join(join) for join in joins)]
-    merges = [(pair[0], pair[1]) for pair in pairs] + list(joins)
+    merges = list(joins) + [(pair[0], pair[1]) for pair in pairs]
     merges += [(t[:2], t[2]) for t in threes] + [(t[0], t[1:]) for t in threes]
     vocab = {entry: number for number, entry in enumerate(dict.fromkeys(entries))}
     made = Tokenizer(models.BPE(vocab=vocab, merges=merges))
@@ -61,16 +61,14 @@ def test_seven_digits_in_threes(tmp_path):
     assert found.tokens["comma"] > found.tokens["none"]
 
 
-def test_a_merge_decides_without_a_pattern(tmp_path):
-    """`a1` is an entry: after a letter its token takes the first digit of 1 before digits do."""
-    vocabulary = split_by(None, tmp_path, joins=[("a", "1")])
-    found = digit_groups(vocabulary, given=["1013255"])
-    assert found.rules["start"] == "irregular"
-    assert found.positions["start"] == 0
-    # The first digits are joined before others only as their pair stands first among the merges.
-    assert sum(found.by_length["start"][7].values()) == sum(
-        found.by_length["after a letter"][7].values()
-    )
+def test_a_merge_before_others_decides_without_a_pattern(tmp_path):
+    """`(0` is the first merge: in parentheses a leading 0 is taken from its number's first two."""
+    vocabulary = split_by(None, tmp_path, joins=[("(", "0")])
+    found = digit_groups(vocabulary, given=["01"])
+    assert found.by_length["start"][2] == {(2,): 24}
+    assert found.by_length["in parentheses"][2] == {(1, 1): 1, (2,): 23}
+    assert found.positions["after a letter"] == 0
+    assert found.positions["in parentheses"] >= 1
 
 
 def test_numbers_are_the_same_in_every_run():

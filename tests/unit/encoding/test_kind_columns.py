@@ -18,6 +18,7 @@ from auditor.text.kinds import KINDS as TEXT_KINDS
 from auditor.text.kinds import kinds_of
 from auditor.text.stretch import Stretch
 from auditor.text.whitespace import find_runs
+from auditor.vocabulary.spans import correct
 from tests.unit.encoding.random_vocabularies import KINDS, descriptions
 from tests.unit.encoding.test_pieces import data_for, opened
 from tests.unit.small_vocabularies import byte_level
@@ -110,8 +111,6 @@ def test_tokens_by_the_slow_rule(kind, folder, data):
     vocabulary = opened(description, folder)
     stretch = Stretch([text])
     measuring = WholeTexts(vocabulary, parse_control=True, kinds=True)
-    from auditor.vocabulary.spans import correct
-
     spans = correct(vocabulary.engine.encode([text]), stretch, vocabulary.inventory)
     kinds = kinds_of(stretch).tolist()
     slow = Counter(
