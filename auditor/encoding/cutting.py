@@ -8,6 +8,7 @@ import numpy as np
 import numpy.typing as npt
 import pyarrow as pa
 
+from auditor.text.kinds import may_be_cut
 from auditor.text.stretch import Stretch
 from auditor.vocabulary import adjoining
 from auditor.vocabulary.engine import Ints
@@ -38,9 +39,13 @@ class Cut:
 
 
 class Places:
-    """Where cuts are made: where each of ``separations`` allows one."""
+    """Where cuts are made: where each of ``separations`` allows one.
 
-    def __init__(self, separations: list[Separation]) -> None:
+    With ``kinds``, only where the kind of no character changes by it, too.
+    """
+
+    def __init__(self, separations: list[Separation], *, kinds: bool = False) -> None:
+        self._kinds = kinds
         self._classes, asked = in_common(separations)
         self._asked = asked.reshape(-1).astype(np.uint8)
 
@@ -57,7 +62,10 @@ class Places:
         # A line end is alone when nothing, or no whitespace, stands before it in its document.
         alone = edge[places - 1] | ~stretch.whitespace[np.maximum(places - 2, 0)]
         answers[alone] |= adjoining.LONE
-        return np.asarray(places[(asked & ~(answers | adjoining.OPEN)) == 0])
+        found = np.asarray(places[(asked & ~(answers | adjoining.OPEN)) == 0])
+        if self._kinds:
+            found = found[may_be_cut(points[found - 1], points[found])]
+        return found
 
     def _candidates(self, points: npt.NDArray[np.uint32]) -> tuple[Ints, Asked]:
         """Return the places between two classes that are ever cut, and what is asked there."""

@@ -60,7 +60,8 @@ class Tale:
 class Documents:
     """Measures stretches of documents; ``sink`` takes in what texts hold.
 
-    With ``whole`` no document is cut. Which way is taken never changes a figure.
+    With ``whole`` no document is cut; with ``kinds`` kinds of text are counted too. Which way is
+    taken never changes a figure.
     """
 
     def __init__(
@@ -72,23 +73,26 @@ class Documents:
         graphemes: bool,
         parse_control: bool,
         whole: bool,
+        kinds: bool = False,
     ) -> None:
         self.tale = Tale()
         self._vocabularies = vocabularies
         self._sink = sink
         self._words = words
         self._graphemes = graphemes
-        self._whole = [WholeTexts(v, parse_control=parse_control) for v in vocabularies]
+        self._whole = [
+            WholeTexts(v, parse_control=parse_control, kinds=kinds) for v in vocabularies
+        ]
         self._separations = self._separate(whole=whole)
         # Places in the list of vocabularies: those measured by pieces, and the others.
         self._cut = [p for p, s in enumerate(self._separations) if s is not None]
         self._uncut = [p for p, s in enumerate(self._separations) if s is None]
         self._later = [
-            WholeTexts(v, parse_control=parse_control, separation=s) if s else None
+            WholeTexts(v, parse_control=parse_control, separation=s, kinds=kinds) if s else None
             for v, s in zip(vocabularies, self._separations, strict=True)
         ]
         held = [s for s in self._separations if s is not None]
-        self._places = Places(held) if held else None
+        self._places = Places(held, kinds=kinds) if held else None
         self._added = AddedContents(sorted({c for s in held for c in s.whole_for}))
         self._ledger = Ledger(len(self._cut), self._measure_pieces, self._sink_pieces)
 

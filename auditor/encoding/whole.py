@@ -2,13 +2,14 @@
 
 from __future__ import annotations
 
-from dataclasses import dataclass, replace
+from dataclasses import dataclass, field, replace
 
 import numpy as np
 
 from auditor.encoding.alterations import Alterations
 from auditor.encoding.broken import Broken, BrokenWords
 from auditor.encoding.fates import FATES, Fates
+from auditor.encoding.kinds import BrokenKinds, kind_columns
 from auditor.encoding.measures import (
     Columns,
     Reading,
@@ -63,6 +64,8 @@ class Measured:
     runs: RunTable
     broken: Broken
     lost: list[LostCharacters]
+    # Broken stretches of one kind of text, by kind; empty where kinds are not asked for.
+    broken_kinds: dict[str, Broken] = field(default_factory=dict)
 
     def contents_only(self) -> Measured:
         """Return the same without columns and runs, which take most of the memory."""
@@ -83,11 +86,17 @@ class WholeTexts:
     """Measures texts under one vocabulary, each encoded whole.
 
     ``separation`` is given for texts that are later parts of documents: it names the engine for
-    them, and the tokens that stand before theirs when they are decoded.
+    them, and the tokens that stand before theirs when they are decoded. With ``kinds`` the
+    columns of kinds of text are added.
     """
 
     def __init__(
-        self, vocabulary: Vocabulary, *, parse_control: bool, separation: Separation | None = None
+        self,
+        vocabulary: Vocabulary,
+        *,
+        parse_control: bool,
+        separation: Separation | None = None,
+        kinds: bool = False,
     ) -> None:
         self._engine: Engine = JoinedParts(separation) if separation else vocabulary.engine
         self._anchor = separation.anchor if separation else ()
@@ -97,6 +106,7 @@ class WholeTexts:
         self._alterations = Alterations(engine.normalize, engine.unaltered)
         self._fates = Fates(vocabulary)
         self._broken = BrokenWords(vocabulary.inventory)
+        self._kinds = BrokenKinds(vocabulary.inventory) if kinds else None
 
     def measure(self, stretch: Stretch, runs: Runs) -> Measured:
         """Return the measures of ``stretch``; raises what the engine raises on a text."""
@@ -109,6 +119,8 @@ class WholeTexts:
             **character_columns(reading),
             **lossless_column(reading, self._anchor),
         }
+        if self._kinds is not None:
+            columns |= kind_columns(reading, stretch.kinds)
         return Measured(
             columns,
             spans.ids,
@@ -116,6 +128,7 @@ class WholeTexts:
             self._run_table(reading, runs),
             self._broken.find(reading),
             _lost_characters(reading),
+            {} if self._kinds is None else self._kinds.find(reading, stretch.kinds),
         )
 
     def _run_table(self, reading: Reading, runs: Runs) -> RunTable:

@@ -9,6 +9,7 @@ import numpy as np
 import numpy.typing as npt
 
 from auditor.text import properties
+from auditor.text.kinds import kinds_of
 from auditor.text.slices import utf8_lengths
 from auditor.text.words import Words, find_words
 
@@ -79,6 +80,11 @@ class Stretch:
     def words(self) -> Words:
         """The words of all documents, in order."""
         return find_words(self.texts, self.bounds, self.points, rule=self._rule)
+
+    @cached_property
+    def kinds(self) -> npt.NDArray[np.uint8]:
+        """The kind of text of each character, numbers of ``kinds.KINDS``, shape (characters,)."""
+        return kinds_of(self)
 
     @cached_property
     def word_texts(self) -> list[str]:
