@@ -177,6 +177,11 @@ class DomainResult(Result):
         return domain_tables.penalty(self.document).infer_objects()
 
     @cached_property
+    def kinds(self) -> pd.DataFrame:
+        """One row a vocabulary and kind of text, and its costliest stretches: `kinds.csv`."""
+        return domain_tables.kinds(self.document).infer_objects()
+
+    @cached_property
     def terms(self) -> pd.DataFrame:
         """One row a vocabulary, term, form and position, as in `terms.csv`."""
         return domain_tables.terms(self.document).infer_objects()

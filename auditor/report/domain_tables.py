@@ -20,6 +20,10 @@ PENALTY_COLUMNS = (
 TERM_COLUMNS = (
     "vocabulary", "term", "weight", "form", "position", "count", "state", "tokens", "broken",
 )  # fmt: skip
+KIND_COLUMNS = (
+    "vocabulary", "kind", "text", "count", "characters", "tokens", "tokens_per_character", "low",
+    "high", "broken",
+)  # fmt: skip
 _ENDS = ("value", "low", "high")
 
 
@@ -62,6 +66,21 @@ def _term(term: Json) -> Iterator[tuple[object, ...]]:
         for position, way in own["positions"].items():
             told = f"{position}, {own['case']}"
             yield (*head, own["form"], told, None, way["state"], way["tokens"], way["broken"])
+
+
+def kinds(document: Json) -> pd.DataFrame:
+    """Return one row a vocabulary and kind, and one each costly stretch of it."""
+    rows = (row for own in document["kinds"] for row in _kind(own))
+    return frame(KIND_COLUMNS, rows)
+
+
+def _kind(own: Json) -> Iterator[tuple[object, ...]]:
+    cost = own["tokens_per_character"] or dict.fromkeys(_ENDS)
+    yield (own["vocabulary"], own["kind"], None, None, own["characters"], own["tokens"],
+           *(cost[end] for end in _ENDS), None)  # fmt: skip
+    for row in own["worst"]:
+        yield (own["vocabulary"], own["kind"], row["text"], row["count"], len(row["text"]),
+               row["pieces"], None, None, None, row["broken"])  # fmt: skip
 
 
 def penalty(document: Json) -> pd.DataFrame:

@@ -12,11 +12,14 @@ import numpy as np
 
 from auditor.corpus import Glossary, Named, find_sources, read_glossary, resolve_fields
 from auditor.encoding.constructed import Constructed
+from auditor.encoding.digits import digit_groups
 from auditor.encoding.documents import SeparationError
 from auditor.encoding.steadiness import costs_of, ways_of
 from auditor.errors import SettingsError
 from auditor.figures import sidebyside
+from auditor.figures.digits import digits_as_json
 from auditor.figures.growth import growth
+from auditor.figures.kinds import Worst, kinds_as_json
 from auditor.figures.steadiness import steadiness
 from auditor.figures.terms import terms_as_json
 from auditor.figures.values import Value
@@ -41,7 +44,7 @@ from auditor.runs.reading import (
     refuse_empty,
     with_conversations,
 )
-from auditor.runs.tallied import AuditTallies
+from auditor.runs.tallied import AuditTallies, ContentTallies
 from auditor.runs.vetting import (
     HALF,
     NOT_NFC,
@@ -60,6 +63,8 @@ from auditor.vocabulary import VocabularyFacts, open_vocabulary
 Json = dict[str, Any]
 # Words that are drawn from the corpus to try how steadily they are broken.
 DRAWS = 5000
+# The costliest stretches of a kind of text that are listed.
+STRETCHES = 50
 Tell = Callable[[Progress], None] | None
 
 
@@ -135,13 +140,13 @@ def _vetted(
         folder = out or Path("reports") / f"{named}--domain"
         with OutputFolder(folder, overwrite=overwrite, files=DOMAIN_FILES) as output:
             tallies, own, terms, words = _measured(plan, facts, glossary, processes, reading)
-            steady = _steadiness(plan, words, wishes.seed)
+            tried = _tried(plan, facts, words, wishes.seed)
             if texts:
                 other = yardstick.general_plan(plan, texts, wishes.general_text)
                 general = yardstick.measured(other, progress)
             worst = worst_words(plan, facts, tallies)
             vetting = _Vetting(
-                plan, wishes, reading, facts, tallies, own, general, terms, words, steady
+                plan, wishes, reading, facts, tallies, own, general, terms, words, tried
             )
             document = vetting.document()
             _write(output, document, worst)
@@ -193,19 +198,28 @@ def _measured(
     return tallies, own, [terms_as_json(glossary, *pair) for pair in pairs], words
 
 
-def _steadiness(plan: Plan, words: WordCountsTally, seed: int) -> list[Json]:
-    """Return how steadily each vocabulary breaks words drawn from the corpus."""
+@dataclass
+class _Tried:
+    """What was found by trying the vocabularies: one item each."""
+
+    steadiness: list[Json] = field(default_factory=list)
+    digits: list[Json] = field(default_factory=list)
+
+
+def _tried(plan: Plan, facts: list[VocabularyFacts], words: WordCountsTally, seed: int) -> _Tried:
+    """Return how steadily each vocabulary breaks words drawn from the corpus, and digits."""
     total = sum(r * n for r, n in words.frequencies().items())
     drawn = words.drawn(DRAWS, total, share_of(seed))
-    if not drawn:
-        return []
     altered = changes(drawn, seed)
-    found = []
-    for spec in plan.vocabularies:
+    found = _Tried()
+    for spec, own in zip(plan.vocabularies, facts, strict=True):
         vocabulary = open_vocabulary(spec)
+        found.digits.append({"vocabulary": own.name, **digits_as_json(digit_groups(vocabulary))})
+        if not drawn:
+            continue
         ways = ways_of(vocabulary, drawn, parse_control=plan.parse_control)
         held = steadiness(drawn, ways, costs_of(vocabulary, drawn, altered))
-        found.append(held if plan.excerpts else {**held, "worst": []})
+        found.steadiness.append(held if plan.excerpts else {**held, "worst": []})
     return found
 
 
@@ -213,6 +227,7 @@ def _write(output: OutputFolder, document: Json, worst: WorstWords) -> None:
     output.write("domain.json", contract.dump(document))
     output.write("candidates.csv", tables.as_csv(domain_tables.candidates(document)))
     output.write("penalty.csv", tables.as_csv(domain_tables.penalty(document)))
+    output.write("kinds.csv", tables.as_csv(domain_tables.kinds(document)))
     output.write("terms.csv", tables.as_csv(domain_tables.terms(document)))
     output.write("words.csv", tables.as_csv(tables.words(worst)))
     output.write("report.html", domain_page.render(document, worst))
@@ -238,7 +253,7 @@ class _Vetting:
         general: Yardstick | None,
         terms: list[Json],
         words: WordCountsTally,
-        steady: list[Json],
+        tried: _Tried,
     ) -> None:
         settings: Json = {
             "fields": reading.fields.as_json(),
@@ -254,7 +269,8 @@ class _Vetting:
         self._audit = assemble(plan, facts, tallies, reading.names, settings)
         self._wishes, self._facts = wishes, facts
         self._tallies, self._own, self._general = tallies, own, general
-        self._terms, self._words, self._steady = terms, words, steady
+        self._terms, self._words = terms, words
+        self._steady, self._digits, self._excerpts = tried.steadiness, tried.digits, plan.excerpts
 
     def document(self) -> Json:
         """Return the whole document."""
@@ -274,6 +290,8 @@ class _Vetting:
                 for facts, own in zip(self._facts, self._terms, strict=bool(self._terms))
                 for row in own["terms"]
             ],
+            "kinds": self._kinds(),
+            "digits": self._digits,
             "steadiness": [
                 {"vocabulary": facts.name, **own}
                 for facts, own in zip(self._facts, self._steady, strict=bool(self._steady))
@@ -353,6 +371,22 @@ class _Vetting:
             )
             for row in yardstick.penalty(held, slices, limit)
         ]
+
+    def _kinds(self) -> list[Json]:
+        return [
+            {"vocabulary": facts.name, **row}
+            for facts, tally, contents in zip(
+                self._facts, self._own.kinds, self._tallies.contents, strict=True
+            )
+            for row in kinds_as_json(tally, ALL, self._worst_stretches(contents))
+        ]
+
+    def _worst_stretches(self, contents: ContentTallies) -> dict[str, Worst]:
+        if not self._excerpts:
+            return {}
+        return {
+            kind: tables.worst_words(tally)[:STRETCHES] for kind, tally in contents.kinds.items()
+        }
 
     def _growth(self) -> Json:
         """Return the growth of distinct words, and of used entries of each vocabulary."""

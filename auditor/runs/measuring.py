@@ -54,10 +54,13 @@ class Finished:
 class Measurer:
     """Measures batches under every vocabulary of a plan; opens them once.
 
-    ``kept`` names the columns of each document that an outcome holds.
+    ``kept`` names the columns of each document that an outcome holds; with ``kinds`` they may be
+    those of kinds of text.
     """
 
-    def __init__(self, plan: Plan, kept: tuple[str, ...] = ROW_COLUMNS) -> None:
+    def __init__(
+        self, plan: Plan, kept: tuple[str, ...] = ROW_COLUMNS, *, kinds: bool = False
+    ) -> None:
         self._plan = plan
         self._kept = kept
         self.vocabularies = [open_vocabulary(spec) for spec in plan.vocabularies]
@@ -72,6 +75,7 @@ class Measurer:
             graphemes=plan.graphemes,
             parse_control=plan.parse_control,
             whole=plan.whole,
+            kinds=kinds,
         )
 
     def finish(self) -> Finished:

@@ -29,8 +29,16 @@ LANGUAGE_FILES = frozenset(
 )
 INSPECTION_FILES = frozenset({"inspection.json", "entries.csv", "unreachable.csv", "report.html"})
 DOMAIN_FILES = frozenset(
-    {"domain.json", "candidates.csv", "penalty.csv", "terms.csv", "words.csv", "report.html"}
-)
+    {
+        "domain.json",
+        "candidates.csv",
+        "penalty.csv",
+        "kinds.csv",
+        "terms.csv",
+        "words.csv",
+        "report.html",
+    }
+)  # fmt: skip
 
 
 class OutputFolder:

@@ -6,6 +6,7 @@ from dataclasses import dataclass, field
 
 import numpy as np
 
+from auditor.encoding.broken import Broken
 from auditor.encoding.measures import Columns
 from auditor.encoding.whole import Contents, RunTable
 from auditor.figures.catalogue import COLUMNS, PAIRS
@@ -18,6 +19,7 @@ from auditor.tallies.usage import UsageTally
 from auditor.tallies.whitespace import WhitespaceTally
 from auditor.tallies.words import WordsTally
 from auditor.text.whitespace import KINDS
+from auditor.vocabulary.engine import Ints
 
 
 @dataclass
@@ -61,20 +63,23 @@ class DocumentTallies:
 
 @dataclass
 class ContentTallies:
-    """What texts hold under one vocabulary: entries used, broken words, lost characters."""
+    """What texts hold under one vocabulary: entries used, broken words, lost characters.
+
+    ``kinds`` holds the broken stretches of each kind of text, where kinds are asked for.
+    """
 
     usage: UsageTally
     words: WordsTally = field(default_factory=WordsTally)
     characters: CharactersTally = field(default_factory=CharactersTally)
+    kinds: dict[str, WordsTally] = field(default_factory=dict)
 
     def add(self, contents: Contents) -> None:
         """Add texts, each as often as it occurs."""
         measured, weights = contents.measured, contents.weights
         self.usage.add(measured.ids, np.repeat(weights, np.diff(measured.bounds)))
-        broken = measured.broken
-        times = np.zeros(len(broken.rows), dtype=np.int64)
-        np.add.at(times, broken.row_of, weights[broken.document_of])
-        self.words.add_table(broken.rows, times)
+        _add_broken(self.words, measured.broken, weights)
+        for kind, broken in measured.broken_kinds.items():
+            _add_broken(self.kinds.setdefault(kind, WordsTally()), broken, weights)
         for lost in measured.lost:
             counts = (lost.counts * weights[lost.documents]).tolist()
             sources = contents.sources[lost.documents].tolist()
@@ -90,6 +95,14 @@ class ContentTallies:
         self.usage.merge(other.usage)
         self.words.merge(other.words)
         self.characters.merge(other.characters)
+        for kind, words in other.kinds.items():
+            self.kinds.setdefault(kind, WordsTally()).merge(words)
+
+
+def _add_broken(tally: WordsTally, broken: Broken, weights: Ints) -> None:
+    times = np.zeros(len(broken.rows), dtype=np.int64)
+    np.add.at(times, broken.row_of, weights[broken.document_of])
+    tally.add_table(broken.rows, times)
 
 
 @dataclass

@@ -11,8 +11,9 @@ from auditor.corpus import Batch, Glossary
 from auditor.encoding.composed import COLUMNS as FORM_COLUMNS
 from auditor.encoding.composed import not_composed
 from auditor.encoding.constructed import Constructed, construct
+from auditor.encoding.kinds import CHARACTER_COLUMNS, TOKEN_COLUMNS
 from auditor.encoding.terms import TermFinder
-from auditor.figures import sidebyside
+from auditor.figures import kinds, sidebyside
 from auditor.runs.measuring import Finished, Measurer, Outcome
 from auditor.runs.plan import Plan
 from auditor.runs.tallied import CorpusTallies, DocumentTallies
@@ -29,28 +30,38 @@ from auditor.vocabulary.engine import Ints
 
 # A field that no record has: which half of the corpus a document belongs to.
 HALF = "\0half"
+KIND_COLUMNS = (*CHARACTER_COLUMNS, *TOKEN_COLUMNS)
 NOT_NFC = "not in NFC"
 _LOST = ("unknown_characters", "dropped_characters")
 
 
 @dataclass
 class DomainTallies:
-    """What vetting needs beside an audit's own tallies; ``forms`` has one item a vocabulary."""
+    """What vetting needs beside an audit's own tallies; ``forms`` and ``kinds`` have one item a
+    vocabulary.
+    """
 
     side: MomentsTally
     forms: list[RowsTally] = field(default_factory=list)
+    kinds: list[MomentsTally] = field(default_factory=list)
 
     @classmethod
     def empty(cls, vocabularies: int) -> DomainTallies:
         """Return empty tallies for so many vocabularies."""
         side = MomentsTally(sidebyside.columns(vocabularies), sidebyside.pairs(vocabularies))
-        return cls(side, [RowsTally(FORM_COLUMNS) for _ in range(vocabularies)])
+        return cls(
+            side,
+            [RowsTally(FORM_COLUMNS) for _ in range(vocabularies)],
+            [MomentsTally(kinds.COLUMNS, kinds.PAIRS) for _ in range(vocabularies)],
+        )
 
     def merge(self, other: DomainTallies) -> None:
         """Add the counts of ``other``."""
         self.side.merge(other.side)
         for ours, theirs in zip(self.forms, other.forms, strict=True):
             ours.merge(theirs)
+        for own, others in zip(self.kinds, other.kinds, strict=True):
+            own.merge(others)
 
 
 @dataclass
@@ -89,7 +100,7 @@ class DomainMeasurer:
     def __init__(self, plan: Plan, glossary: Glossary | None = None) -> None:
         self._plan = plan
         self._glossary = glossary
-        self._audit = Measurer(plan, kept=("tokens", *_LOST))
+        self._audit = Measurer(plan, kept=("tokens", *_LOST, *KIND_COLUMNS), kinds=True)
         self._words = WordCountsTally()
         self._terms = (
             None
@@ -146,7 +157,9 @@ class DomainMeasurer:
             columns[sidebyside.lost_of(place)] = np.sum([row[name] for name in _LOST], axis=0)
         own.side.add(columns, groups)
         for place, vocabulary in enumerate(self._audit.vocabularies):
-            tokens = outcome.rows[place]["tokens"]
+            rows = outcome.rows[place]
+            tokens, counted = rows["tokens"], {"documents": columns["documents"]}
+            own.kinds[place].add({**counted, **{n: rows[n] for n in KIND_COLUMNS}}, groups)
             documents, forms = not_composed(vocabulary.engine, texts, tokens)
             if len(documents):
                 own.forms[place].add(documents, 0 * documents, [NOT_NFC], forms, groups)

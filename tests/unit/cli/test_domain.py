@@ -21,7 +21,8 @@ def test_it_writes_the_vetting_and_says_where(run):
     folder = Path("reports/safety_notices--harbour-bytelevel-and-1-more--domain")
     assert said.code == 0
     assert {path.name for path in folder.iterdir()} == {
-        "domain.json", "candidates.csv", "penalty.csv", "terms.csv", "words.csv", "report.html",
+        "domain.json", "candidates.csv", "penalty.csv", "kinds.csv", "terms.csv", "words.csv",
+        "report.html",
     }  # fmt: skip
     flat = " ".join(said.out.split())
     assert f"Written to {folder}" in flat

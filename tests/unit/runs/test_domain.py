@@ -243,3 +243,44 @@ def test_a_yardstick_that_does_not_fit_is_refused(tmp_path, monkeypatch, wishes,
         vet_domain(Plan((corpus,), specs("harbour-wordpiece")), wishes, tmp_path / "d")
     assert told in f"{refused.value.where}: {refused.value.message}"
     assert not (tmp_path / "d").exists()
+
+
+def test_kinds_of_text_cover_every_character_and_token_once(tmp_path, demo):
+    """Their characters and tokens, those of several kinds apart, sum to the totals of `assess`."""
+    audit = assess(plan(NOTES, *VOCABULARIES), tmp_path / "a").audit
+    for held in audit["vocabularies"]:
+        rows = [row for row in demo["kinds"] if row["vocabulary"] == held["name"]]
+        counts = held["slices"]["all"]["counts"]
+        assert sum(row["characters"] or 0 for row in rows) == counts["characters"]
+        assert sum(row["tokens"] for row in rows) == counts["tokens"]
+        by_kind = {row["kind"]: row for row in rows}
+        assert by_kind["dates_and_times"]["characters"] > 0
+        assert by_kind["(several)"]["characters"] is None
+
+
+def test_growth_is_that_of_the_words_counted_out(demo):
+    """Distinct words, those seen once, and used entries, by plain counting."""
+    from collections import Counter
+
+    from auditor.text.stretch import Stretch
+
+    words: Counter[str] = Counter()
+    for line in NOTES.read_bytes().splitlines():
+        text = orjson.loads(line)["text"]
+        held = Stretch([text]).words
+        words.update(text[a:b] for a, b in zip(held.starts, held.ends, strict=True))
+    found = demo["growth"]["words"]
+    assert found["occurrences"] == demo["corpus"]["words"] == words.total()
+    assert found["distinct"] == len(words)
+    assert found["once"] == sum(n == 1 for n in words.values())
+    for own, candidate in zip(demo["growth"]["entries"], demo["candidates"], strict=True):
+        assert own["distinct"] == candidate["usage"]["used_entries"]["numerator"]
+        assert own["occurrences"] == candidate["counts"]["tokens"]
+
+
+def test_the_seed_draws_other_words(tmp_path, demo):
+    """Another seed, other words; figures of the corpus stay."""
+    other = vetted(tmp_path, DomainWishes(seed=5), ("harbour-bytelevel",))
+    one = next(own for own in demo["steadiness"] if own["vocabulary"] == "harbour-bytelevel")
+    assert other["steadiness"][0] != one
+    assert other["steadiness"][0]["draws"] == one["draws"] == 5000
