@@ -3,10 +3,12 @@
 from __future__ import annotations
 
 from collections import Counter
-from collections.abc import Callable, Sequence
+from collections.abc import Sequence
 from typing import Any
 
+from auditor.encoding.digits import digit_groups
 from auditor.encoding.fates import FATES, Fates
+from auditor.inspection.digits import digits_as_json
 from auditor.inspection.surfaces import KINDS, Surface
 from auditor.text.scripts import script
 from auditor.text.stretch import Stretch
@@ -19,14 +21,6 @@ Json = dict[str, Any]
 UNKNOWN = "unknown"
 _LONGEST, _PAIRS_SHOWN, _DUPLICATES_SHOWN = 30, 20, 50
 _WORDS = frozenset({"word start", "continuation"})
-# Numbers on which the way of grouping digits is tried, of every length up to nine.
-_NUMBERS = ("7", "42", "365", "1013", "20387", "198274", "3141592", "27182818", "602214076")
-_BESIDE = {
-    "alone": "{}",
-    "after a space": "L {}",
-    "after a letter": "L{}",
-    "in parentheses": "({})",
-}
 _RUNS = (" ", "  ", "    ", "\t", "\n", "\n\n", "\r\n", "\u00a0", "\u202f", "\u3000", "\u2028",
          "\u200b")  # fmt: skip
 
@@ -101,66 +95,14 @@ def duplicates(vocabulary: Vocabulary, surfaces: Sequence[Surface]) -> Json:
 
 
 def digits(vocabulary: Vocabulary) -> Json:
-    """Return how strings of digits are grouped, by trial, and the rule that fits all trials.
-
-    A group is the digits that one token touches. Rules: ``one at a time``, ``whole``, ``threes from
-    the left``, ``threes from the right``, else ``irregular``; ``unknown`` where a digit is none of
-    the vocabulary's characters.
+    """Return how strings of digits are grouped, by trial; the rule is ``unknown`` where a digit is
+    none of the vocabulary's characters.
     """
-    trials: list[Json] = []
-    for position, context in _BESIDE.items():
-        for number in _NUMBERS:
-            text = context.replace("L", vocabulary.letters[0]).replace("{}", number)
-            begin = text.index(number)
-            groups = _groups(vocabulary, text, begin, begin + len(number))
-            trials.append({"position": position, "number": number, "groups": groups})
-    rules = [
-        name
-        for name, rule in _RULES.items()
-        if all(trial["groups"] == rule(trial["number"]) for trial in trials)
-    ]
-    by_number: dict[str, set[tuple[str, ...]]] = {}
-    for trial in trials:
-        by_number.setdefault(trial["number"], set()).add(tuple(trial["groups"]))
-    return {
-        "rule": UNKNOWN if _unknown(vocabulary) else next(iter(rules), "irregular"),
-        "depends_on_position": any(len(ways) > 1 for ways in by_number.values()),
-        "trials": trials,
-    }
-
-
-def _unknown(vocabulary: Vocabulary) -> bool:
+    found = digits_as_json(digit_groups(vocabulary))
     unknown = vocabulary.inventory.unknown
-    ids, _ = vocabulary.engine.ids_of([*"0123456789", *_NUMBERS])
-    return unknown is not None and unknown in ids.tolist()
-
-
-def _groups(vocabulary: Vocabulary, text: str, begin: int, end: int) -> list[str]:
-    stretch = Stretch([text])
-    spans = correct(vocabulary.engine.encode([text]), stretch, vocabulary.inventory)
-    found = []
-    for start, stop in zip(spans.starts.tolist(), spans.ends.tolist(), strict=True):
-        part = text[max(start, begin) : min(stop, end)]
-        if stop > begin and start < end and part:
-            found.append(part)
-    return found
-
-
-def _threes_left(number: str) -> list[str]:
-    return [number[place : place + 3] for place in range(0, len(number), 3)]
-
-
-def _threes_right(number: str) -> list[str]:
-    head = len(number) % 3
-    return ([number[:head]] if head else []) + _threes_left(number[head:])
-
-
-_RULES: dict[str, Callable[[str], list[str]]] = {
-    "one at a time": list,
-    "whole": lambda number: [number],
-    "threes from the left": _threes_left,
-    "threes from the right": _threes_right,
-}
+    ids, _ = vocabulary.engine.ids_of([*"0123456789"])
+    lost = unknown is not None and unknown in ids.tolist()
+    return {**found, "rule": UNKNOWN if lost else found["rule"]}
 
 
 def whitespace(vocabulary: Vocabulary) -> list[Json]:

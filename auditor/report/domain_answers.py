@@ -26,6 +26,8 @@ WEIGHTS = (
     " of characters lost or of terms broken more than the least. Its score is the sum of these"
     " shares, each times its weight."
 )
+# A kind of text is named when its share of the tokens is larger by so much.
+MORE = 0.01
 _REMEDIES = {
     "longer limit": "a limit of {length} would keep whole {documents} more ({share} of all)",
     "normalise first": "normalising to NFC first would save {share} of its tokens",
@@ -51,7 +53,7 @@ def verdict(document: Json) -> dict[str, list[str]]:
     """Return the sentences of the verdict under the keys of ``HEADINGS``."""
     parts = {
         "losses": (_losses,),
-        "cost": (_costs, _beside, _limits),
+        "cost": (_costs, _beside, _limits, _kinds),
         "terms": (_terms,),
         "choice": (_order,),
         "help": (_help,),
@@ -121,6 +123,25 @@ def _beside(document: Json) -> Iterator[str]:
             f"On the same documents {named(own)} spends {figure(pair['tokens_ratio'])} × the tokens"
             f" of {named(first)}."
         )
+
+
+def _kinds(document: Json) -> Iterator[str]:
+    """What takes most beyond its share of the characters, under the first candidate."""
+    first = ordered(document)[0]["name"]
+    rows = [
+        row
+        for row in document["kinds"]
+        if row["vocabulary"] == first and row["characters"] and row["tokens"]
+    ]
+    over = [row for row in rows if row["share_of_tokens"] - row["share_of_characters"] > MORE]
+    over.sort(key=lambda row: row["share_of_characters"] - row["share_of_tokens"])
+    if over:
+        told = ", ".join(
+            f"{row['kind'].replace('_', ' ')} {proportion(row['share_of_tokens'])} of tokens from"
+            f" {proportion(row['share_of_characters'])} of characters"
+            for row in over[:2]
+        )
+        yield f"Under {clean(first, 60)} these kinds of text take more than their share: {told}."
 
 
 def _limits(document: Json) -> Iterator[str]:

@@ -10,7 +10,7 @@ from jinja2 import Environment
 from markupsafe import Markup
 
 from auditor.report import domain_answers, repeating, row_charts
-from auditor.report.formatting import FIGURES, figure, number, plain_name, proportion, value
+from auditor.report.formatting import FIGURES, clean, figure, number, plain_name, proportion, value
 from auditor.report.page import WorstWords, environment, script_of, word_tables
 
 Json = Mapping[str, Any]
@@ -56,6 +56,11 @@ def render(document: Json, worst: WorstWords) -> str:
             if document["general"]
             else [],
             worst_terms=domain_answers.worst_terms(document)[:_TERMS],
+            kinds_by_vocabulary=_kinds(document),
+            kind_drawings={
+                name: _kind_drawing(number, name, rows)
+                for number, (name, rows) in enumerate(_kinds(document).items())
+            },
             drawn_growth=_growth(document),
             word_tables=[table for name, rows in worst for table in word_tables(name, rows)],
             command=repeating.domain_command(document),
@@ -91,6 +96,24 @@ def _environment() -> Environment:
         "known": FIGURES,
     }
     return made
+
+
+def _kinds(document: Json) -> dict[str, list[Json]]:
+    """Return the rows of kinds by vocabulary, in the order of the ranking."""
+    return {
+        own["name"]: [row for row in document["kinds"] if row["vocabulary"] == own["name"]]
+        for own in domain_answers.ordered(document)
+    }
+
+
+def _kind_drawing(number: int, name: str, rows: list[Json]) -> Markup:
+    held = [
+        (plain_name(row["kind"]), row["tokens_per_character"])
+        for row in rows
+        if row["tokens_per_character"] and row["tokens_per_character"]["value"] is not None
+    ]
+    title = f"Tokens per character by kind of text, {clean(name, 60)}"
+    return row_charts.points(f"kinds-{number}", title, held, None)
 
 
 def _growth(document: Json) -> Markup | None:

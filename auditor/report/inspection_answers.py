@@ -15,9 +15,8 @@ NOT_A_FAULT = (
 )
 _RULES = {
     "one at a time": "Digits are written one at a time.",
-    "whole": "Numbers are kept whole, as far as tried.",
-    "threes from the left": "Digits are grouped in threes from the left.",
-    "threes from the right": "Digits are grouped in threes from the right.",
+    "one token": "Numbers are kept whole, as far as tried.",
+    "depends on position": "The rule for digits depends on what stands before a number.",
     "irregular": "Digits are grouped irregularly: no one rule fits all the numbers tried.",
     "unknown": "Some digits are none of the vocabulary's characters: numbers become unknown.",
 }
@@ -69,9 +68,16 @@ def _made_of(vocabulary: Json) -> Iterator[str]:
 
 
 def _digits(vocabulary: Json) -> Iterator[str]:
-    yield _RULES[vocabulary["digits"]["rule"]]
-    if vocabulary["digits"]["depends_on_position"]:
-        yield "The same number is broken in different ways by what stands before it."
+    digits = vocabulary["digits"]
+    rule = digits["rule"]
+    yield _RULES.get(rule) or f"Digits are grouped {rule}."
+    changed = {name: n for name, n in digits["positions"].items() if n}
+    if changed:
+        told = ", ".join(f"{name} {count(n)}" for name, n in changed.items())
+        yield (
+            f"Of {count(digits['numbers'])} numbers, so many are grouped otherwise than at the"
+            f" start: {told}."
+        )
 
 
 def _whitespace(vocabulary: Json) -> Iterator[str]:

@@ -17,12 +17,12 @@ from auditor.encoding.documents import SeparationError
 from auditor.encoding.steadiness import costs_of, ways_of
 from auditor.errors import SettingsError
 from auditor.figures import sidebyside
-from auditor.figures.digits import digits_as_json
 from auditor.figures.growth import growth
 from auditor.figures.kinds import Worst, kinds_as_json
 from auditor.figures.steadiness import steadiness
 from auditor.figures.terms import terms_as_json
 from auditor.figures.values import Value
+from auditor.inspection.digits import digits_as_json
 from auditor.planning import fit, ranking
 from auditor.planning.histogram import LengthHistogram
 from auditor.planning.model import ModelShape

@@ -5,7 +5,7 @@ from __future__ import annotations
 import json
 
 import pytest
-from tokenizers import Regex, Tokenizer, decoders, models, normalizers, pre_tokenizers
+from tokenizers import Tokenizer, decoders, models, normalizers, pre_tokenizers
 
 from auditor.inspection.composition import composition
 from auditor.inspection.findings import findings
@@ -86,25 +86,13 @@ def bytelevel(*merges):
     return tokenizer
 
 
-def test_digit_rules_of_published_patterns(tmp_path):
-    r"""`\p{N}{1,3}` groups threes from the left, `\p{N}` one at a time (patterns of rank files)."""
-    digits = [(a, b) for a in "0123456789" for b in "0123456789"]
-    threes = [pair for a, b in digits for c in "0123456789" for pair in ((a + b, c), (c, a + b))]
-    for pattern, rule in ((r"\p{N}{1,3}", "threes from the left"), (r"\p{N}", "one at a time")):
-        tokenizer = bytelevel(*digits, *threes)
-        tokenizer.pre_tokenizer = pre_tokenizers.Sequence(
-            [
-                pre_tokenizers.Split(Regex(pattern), "isolated"),
-                pre_tokenizers.ByteLevel(add_prefix_space=False, use_regex=False),
-            ]
-        )
-        folder = tmp_path / rule.replace(" ", "-")
-        folder.mkdir()
-        vocabulary = opened(folder, tokenizer)
-        held = composition(vocabulary, surfaces_of(vocabulary))["digits"]
-        assert (held["rule"], held["depends_on_position"]) == (rule, False)
-        trial = next(t for t in held["trials"] if t["number"] == "20387")
-        assert trial["groups"] == (["203", "87"] if "three" in rule else list("20387"))
+def test_digits_that_are_no_characters_of_the_vocabulary(tmp_path):
+    """Two letters and an unknown entry: numbers are unknown, whatever the groups look like."""
+    model = models.WordPiece({"[UNK]": 0, "a": 1, "b": 2}, unk_token="[UNK]")
+    tokenizer = Tokenizer(model)
+    tokenizer.pre_tokenizer = pre_tokenizers.Whitespace()
+    vocabulary = opened(tmp_path, tokenizer)
+    assert composition(vocabulary, surfaces_of(vocabulary))["digits"]["rule"] == "unknown"
 
 
 def test_kinds_of_entries(tmp_path):

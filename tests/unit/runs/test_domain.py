@@ -160,6 +160,19 @@ def test_text_that_is_not_composed_is_told_with_what_composing_saves(tmp_path):
     assert told["normalise first"]["documents"] == 10
 
 
+def _of_text(document):
+    """What may be said of kinds of text, growth and steadiness."""
+    held = set()
+    for row in document["kinds"]:
+        if row["share_of_characters"] is not None:
+            held.add(proportion(row["share_of_characters"])[:-1])
+        held.add(proportion(row["share_of_tokens"])[:-1])
+    held |= set(NUMBER.findall(shared(document["growth"]["words"]["next_is_new"])))
+    for own in document["steadiness"]:
+        held |= set(NUMBER.findall(shared(own["ways"]["all"]["one"])))
+    return held
+
+
 def spoken(document):
     """Every number that a verdict may say, as the reports write it."""
     held = set()
@@ -182,9 +195,7 @@ def spoken(document):
             held.add(proportion(by_term["words_whole"]["share"])[:-1])
     for row in document["penalty"]:
         held |= set(NUMBER.findall(figure(row["ratio"])))
-    held |= set(NUMBER.findall(shared(document["growth"]["words"]["next_is_new"])))
-    for own in document["steadiness"]:
-        held |= set(NUMBER.findall(shared(own["ways"]["all"]["one"])))
+    held |= _of_text(document)
     stability = document["ranking"]["stability"]
     if stability:
         held |= {f"{n:,}" for n in (*stability["first_in_weightings"].values(),
