@@ -24,13 +24,18 @@ NOT_INDEPENDENT = (
     "occurrences are taken for independent draws; words of one document are not, so that further"
     " documents vary more"
 )
-_POINTS, _FITTED = 30, 20
+SMOOTHED = "few were seen once: the series is smoothed (Efron & Thisted 1976)"
+_POINTS, _FITTED, _THROWS = 30, 20, 15
 # Up to this count the product is taken factor by factor; beyond it by the logarithm of factorials.
 _BY_FACTORS = 5000
 
 
-def growth(frequencies: Frequencies) -> Json:
-    """Return what the frequencies of frequencies say, as JSON values."""
+def growth(frequencies: Frequencies, unseen: int | None = None) -> Json:
+    """Return what the frequencies of frequencies say, as JSON values.
+
+    ``unseen`` is the number of kinds that could still be new, where it is known. The power law is
+    fitted to the curve from a tenth of the occurrences on.
+    """
     total = sum(r * n for r, n in frequencies.items())
     kinds = sum(frequencies.values())
     return {
@@ -39,7 +44,7 @@ def growth(frequencies: Frequencies) -> Json:
         "once": frequencies.get(1, 0),
         "twice": frequencies.get(2, 0),
         "next_is_new": next_is_new(frequencies).as_json(),
-        "new_in_as_much_again": new_in_as_much_again(frequencies).as_json(),
+        "new_in_as_much_again": new_in_as_much_again(frequencies, unseen).as_json(),
         "heaps": heaps(curve(frequencies, total, total / 10, _FITTED)) if total >= 100 else None,
         "curve": [list(point) for point in curve(frequencies, total, 1, _POINTS)],
         "note": NOT_INDEPENDENT,
@@ -50,28 +55,49 @@ def next_is_new(frequencies: Frequencies) -> Value:
     """Return the probability that the next occurrence is of a kind not seen: n1 / N.
 
     Good 1953 (Biometrika 40:237-264), after Turing; the interval is by the variance of Esty 1983
-    (Annals of Statistics 11:905-912): (n1·(1 - n1/N) + 2·n2) / N² (formula from memory).
+    (Annals of Statistics 11:905-912): (n1·(1 - n1/N) + 2·n2) / N² (formula from memory). Where that
+    is 0 it says nothing, and there is no interval.
     """
     total = sum(r * n for r, n in frequencies.items())
     if not total:
         return undefined("no occurrences")
     once, twice = frequencies.get(1, 0), frequencies.get(2, 0)
     share = once / total
-    half = Z * math.sqrt(max(0.0, once * (1 - share) + 2 * twice)) / total
+    spread = once * (1 - share) + 2 * twice
+    if spread <= 0:
+        return Value(share, None, None, once, total, "nothing seen once or twice: no interval")
+    half = Z * math.sqrt(spread) / total
     return Value(share, max(0.0, share - half), min(1.0, share + half), once, total)
 
 
-def new_in_as_much_again(frequencies: Frequencies) -> Value:
+def new_in_as_much_again(frequencies: Frequencies, unseen: int | None = None) -> Value:
     """Return how many new kinds as many occurrences again are expected to bring.
 
     Good & Toulmin 1956 (Biometrika 43:45-63): n1 - n2 + n3 - …, with the standard error
-    sqrt(n1 + n2 + n3 + …); the series holds up to as much again, not beyond.
+    sqrt(n1 + n2 + n3 + …); the series holds up to as much again, not beyond. It swings where few
+    kinds were seen once: unless n1 >= n2 >= n3, each term is weighted by the chance of r heads or
+    more in 15 throws (in the manner of Efron & Thisted 1976, Biometrika 63:435-447; from memory),
+    and the note says so. No fewer than none are new, and no more than ``unseen``, where known.
     """
     if not frequencies:
         return undefined("no occurrences")
-    value = sum(n if r % 2 else -n for r, n in frequencies.items())
-    half = Z * math.sqrt(sum(frequencies.values()))
-    return Value(float(value), max(0.0, value - half), value + half, None, None)
+    first = [frequencies.get(r, 0) for r in (1, 2, 3)]
+    falling = first[0] >= first[1] >= first[2]
+    weights = {r: 1.0 if falling else _heads(r) for r in frequencies}
+    value = sum((1 if r % 2 else -1) * weights[r] * n for r, n in frequencies.items())
+    half = Z * math.sqrt(sum(weights[r] ** 2 * n for r, n in frequencies.items()))
+    low, middle, high = (_within(end, unseen) for end in (value - half, value, value + half))
+    return Value(middle, low, high, None, None, None if falling else SMOOTHED)
+
+
+def _heads(least: int) -> float:
+    """Return the chance of ``least`` heads or more in 15 throws of a coin."""
+    ways = sum(math.comb(_THROWS, k) for k in range(least, _THROWS + 1))
+    return ways / float(1 << _THROWS)
+
+
+def _within(value: float, most: int | None) -> float:
+    return max(0.0, value if most is None else min(value, float(most)))
 
 
 def curve(
@@ -91,7 +117,10 @@ def curve(
 
 
 def _log_missing(counts: npt.NDArray[np.int64], total: int, m: int) -> npt.NDArray[np.float64]:
-    """Return the logarithm of the chance that m draws miss a kind of each count; -inf for none."""
+    """Return the logarithm of the chance that m draws miss a kind of each count; -inf for none.
+
+    It is that of C(N - r, m) / C(N, m), written so that no large numbers cancel.
+    """
     found = np.full(len(counts), -np.inf)
     possible = counts <= total - m
     few = possible & (counts <= _BY_FACTORS)
@@ -99,12 +128,32 @@ def _log_missing(counts: npt.NDArray[np.int64], total: int, m: int) -> npt.NDArr
         factors = np.log1p(-m / (total - np.arange(int(counts[few].max()), dtype=np.float64)))
         found[few] = np.cumsum(factors)[counts[few] - 1]
     for place in np.flatnonzero(possible & ~few).tolist():
-        r = int(counts[place])
-        found[place] = (
-            math.lgamma(total - r + 1) - math.lgamma(total + 1)
-            + math.lgamma(total - m + 1) - math.lgamma(total - m - r + 1)
-        )  # fmt: skip
+        found[place] = _log_missing_many(total, int(counts[place]), m)
     return np.asarray(np.minimum(found, 0.0))
+
+
+def _log_missing_many(total: int, r: int, m: int) -> float:
+    """Return the same for one count: by factors over the draws, or by Stirling's series."""
+    if m <= _BY_FACTORS:
+        places = total - np.arange(m, dtype=np.float64)
+        return float(np.log1p(-r / places).sum())
+    rest = total - r - m
+    if rest <= 1000:
+        return (
+            math.lgamma(total - r + 1) - math.lgamma(total + 1)
+            + math.lgamma(total - m + 1) - math.lgamma(rest + 1)
+        )  # fmt: skip
+    return (
+        (total - r + 0.5) * math.log1p(-r / total)
+        - (rest + 0.5) * math.log1p(-r / (total - m))
+        + r * math.log1p(-m / total)
+        + _tail(total - r) + _tail(total - m) - _tail(total) - _tail(rest)
+    )  # fmt: skip
+
+
+def _tail(x: int) -> float:
+    """Return the first terms of Stirling's series beyond the formula."""
+    return 1 / (12 * x) - 1 / (360 * x**3)
 
 
 def heaps(points: list[tuple[int, float]]) -> Json:

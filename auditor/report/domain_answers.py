@@ -106,9 +106,10 @@ def _losses(document: Json) -> Iterator[str]:
 
 def _costs(document: Json) -> Iterator[str]:
     for own in ordered(document):
-        told = (
-            f"{named(own)} spends {ranged('fertility', own['figures']['fertility'])} tokens a word"
-        )
+        fertility = own["figures"]["fertility"]
+        if fertility["value"] is None:
+            continue
+        told = f"{named(own)} spends {ranged('fertility', fertility)} tokens a word"
         row = penalty_of(document, own["name"], "fertility")
         if row is not None and row["ratio"]["value"] is not None:
             told += f", {figure(row['ratio'])} × what it spends on the general text"

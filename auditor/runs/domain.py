@@ -394,7 +394,8 @@ class _Vetting:
         for facts, contents in zip(self._facts, self._tallies.contents, strict=True):
             times, ids = np.unique(contents.usage.occurrences, return_counts=True)
             used = {t: n for t, n in zip(times.tolist(), ids.tolist(), strict=True) if t}
-            entries.append({"vocabulary": facts.name, **growth(used)})
+            unseen = facts.entries - sum(used.values())
+            entries.append({"vocabulary": facts.name, **growth(used, unseen)})
         return {"words": growth(self._words.frequencies()), "entries": entries}
 
     def _ranking(self, candidates: list[Json]) -> Json:

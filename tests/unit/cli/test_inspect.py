@@ -5,8 +5,11 @@ from __future__ import annotations
 import csv
 from pathlib import Path
 
+import jsonschema
 import orjson
+import pytest
 
+from auditor.report import contract
 from tests.unit.cli.conftest import DEMO, VOCABULARY
 
 OTHER = str(DEMO / "vocabularies" / "harbour-wordpiece")
@@ -37,6 +40,13 @@ def test_two_vocabularies_are_compared(run):
     first, second = (own["entries"] for own in held["vocabularies"])
     assert row["only_in_second"]["entries"] + row["shared"] <= second
     assert row["only_in_first"]["entries"] + row["shared"] <= first
+
+
+@pytest.mark.parametrize("names", [(VOCABULARY,), (OTHER, VOCABULARY)])
+def test_the_document_keeps_its_schema(run, names):
+    """`inspection.json` against the schema that ships, with and without differences."""
+    said = run("inspect", *names, "--out", "i", "--json")
+    jsonschema.validate(orjson.loads(said.out), contract.schema("inspection"))
 
 
 def test_the_model_gives_the_share_of_the_embedding(run):

@@ -2,12 +2,20 @@
 
 import itertools
 import math
+from fractions import Fraction
 
 import pytest
 from hypothesis import given
 from hypothesis import strategies as st
 
-from auditor.figures.growth import curve, growth, heaps, new_in_as_much_again, next_is_new
+from auditor.figures.growth import (
+    SMOOTHED,
+    curve,
+    growth,
+    heaps,
+    new_in_as_much_again,
+    next_is_new,
+)
 
 # Words of Shakespeare that occur r times, r = 1 … 100, and 846 that occur more often: Efron &
 # Thisted 1976, Biometrika 63:435-447, table 1. N = 884,647, 31,534 distinct.
@@ -84,12 +92,50 @@ def test_the_curve_is_the_mean_over_all_draws(counts, data):
     assert found[m] == pytest.approx(mean)
 
 
-def test_the_two_ways_to_the_chance_agree():
-    """Counts on both sides of the border between factors and factorials, against the product."""
-    for times in (4999, 5000, 5001, 5002):
-        [(_, value)] = curve({times: 1}, 2_000_000, 100, 1)
-        missed = math.prod((2_000_000 - times - i) / (2_000_000 - i) for i in range(100))
-        assert value == pytest.approx(1 - missed, rel=1e-6)
+@pytest.mark.parametrize("total", [10**5, 2 * 10**6, 10**8, 10**10])
+def test_the_chance_of_missing_a_kind_is_exact_at_any_size(total):
+    """Counts and draws on both sides of each border, against products of exact fractions."""
+    for times in (1, 40, 4999, 5001, total // 7):
+        for m in (1, 24, 4999, 5001):
+            if min(times, m) > 5001 or times > total - m:
+                continue
+            few, many = sorted((times, m))
+            missed = Fraction(1)
+            for i in range(min(few, 60)):
+                missed *= Fraction(total - many - i, total - i)
+            if few > 60:
+                logs = (math.log1p(-many / (total - i)) for i in range(few))
+                expected = -math.expm1(math.fsum(logs))
+            else:
+                expected = float(1 - missed)
+            [(_, value)] = curve({times: 1}, total, m, 1)[:1]
+            assert value == pytest.approx(expected, rel=1e-8)
+
+
+def test_one_draw_finds_one_kind_of_ten_thousand_million():
+    """Counts by Zipf's law: whatever their number, the first draw is one kind."""
+    counts = {10**10 // (rank * 20): 1 for rank in range(1, 300)}
+    rest = 10**10 - sum(counts)
+    counts[1] = counts.get(1, 0) + rest
+    assert curve(counts, 10**10, 1, 30)[0] == (1, pytest.approx(1))
+
+
+def test_few_singletons_are_smoothed_and_bounded():
+    """The plain series would say -10: none is less than none, and the note says what was done."""
+    found = new_in_as_much_again({2: 10})
+    assert found.value == 0.0
+    assert found.low <= found.value <= found.high
+    assert found.note == SMOOTHED
+    capped = new_in_as_much_again({1: 50, 2: 10, 3: 5}, unseen=4)
+    assert (capped.value, capped.high) == (4.0, 4.0)
+
+
+@pytest.mark.parametrize("held", [{3: 5}, {1: 1}])
+def test_counts_that_say_nothing_of_the_next_have_no_interval(held):
+    """Nothing seen once or twice, and one occurrence of all: no claim of certainty."""
+    found = next_is_new(held)
+    assert (found.low, found.high) == (None, None)
+    assert found.note is not None
 
 
 def test_growth_of_everything_and_of_nothing():

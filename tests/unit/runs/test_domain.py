@@ -4,6 +4,7 @@ from __future__ import annotations
 
 import re
 
+import jsonschema
 import orjson
 import pytest
 
@@ -13,6 +14,7 @@ from auditor.figures import independent
 from auditor.planning import cost
 from auditor.planning.model import parse_model
 from auditor.planning.ranking import parse_weights
+from auditor.report import contract
 from auditor.report.domain_answers import shared
 from auditor.report.formatting import FIGURES, figure, proportion, ranged
 from auditor.runs.auditing import assess
@@ -267,6 +269,26 @@ def test_kinds_of_text_cover_every_character_and_token_once(tmp_path, demo):
         by_kind = {row["kind"]: row for row in rows}
         assert by_kind["dates_and_times"]["characters"] > 0
         assert by_kind["(several)"]["characters"] is None
+
+
+@pytest.mark.parametrize("which", ["demo", "alone", "damaged", "no words"])
+def test_the_document_keeps_its_schema(tmp_path, demo, which):
+    """`domain.json` against the schema that ships: everything, and as little as there can be."""
+    if which == "demo":
+        made = demo
+    elif which == "alone":
+        made = vetted(tmp_path, DomainWishes(width=64), VOCABULARIES[:1], excerpts=False)
+    elif which == "damaged":
+        wishes = DomainWishes(general=(str(DEMO / "damaged.jsonl"),), terms=DEMO / "glossary.csv")
+        made = vet_domain(
+            Plan((str(DEMO / "damaged.jsonl"),), specs(*VOCABULARIES[1:3])), wishes, tmp_path / "d"
+        ).document
+    else:
+        path = tmp_path / "none.jsonl"
+        path.write_bytes(b'{"text": "!!"}\n')
+        made = vet_domain(Plan((str(path),), specs(*VOCABULARIES)), DomainWishes(), tmp_path / "d")
+        made = made.document
+    jsonschema.validate(orjson.loads(contract.dump(made)), contract.schema("domain"))
 
 
 def test_growth_is_that_of_the_words_counted_out(demo):
