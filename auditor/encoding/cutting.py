@@ -8,6 +8,8 @@ import numpy as np
 import numpy.typing as npt
 import pyarrow as pa
 
+from auditor.text import packed
+from auditor.text.packed import Octets
 from auditor.text.stretch import Stretch
 from auditor.vocabulary import adjoining
 from auditor.vocabulary.engine import Ints
@@ -17,24 +19,82 @@ Asked = npt.NDArray[np.uint8]
 
 # Characters looked up at once, so that tables and results stay in the cache.
 _BLOCK = 1 << 16
-# A key of the ledger: one of these for where in its document a piece stands, then its text.
+# Where in its document a piece stands.
 INNER, LAST, FIRST, ONLY = range(4)
 
 
 @dataclass(frozen=True, slots=True)
-class Cut:
-    """The pieces of a stretch: ``form_of`` (pieces,) indexes ``keys``, the distinct pieces.
+class Distinct:
+    """Some pieces of a stretch, equal ones taken together.
 
-    A key is the digit of the piece's standing (``INNER`` … ``ONLY``) and its text. Pieces
-    ``bounds[i]`` up to ``bounds[i + 1]`` are document ``i``. ``counts`` and ``firsts`` have shape
-    (keys,): occurrences, and the first document.
+    ``form_of`` (pieces,) indexes ``texts``, each with its ``standing``; ``firsts`` is the place of
+    the first piece of each among all of the stretch, ``counts`` how many there are.
     """
 
-    keys: list[str]
+    texts: list[str]
+    standing: Ints
     form_of: Ints
-    bounds: Ints
-    counts: Ints
     firsts: Ints
+    counts: Ints
+
+    def __len__(self) -> int:
+        return len(self.texts)
+
+    @property
+    def characters(self) -> int:
+        """The characters of all distinct pieces."""
+        return sum(map(len, self.texts))
+
+    def keyed(self) -> list[str]:
+        """Return the digit of its standing and the text of each."""
+        return [
+            f"{standing}{text}"
+            for standing, text in zip(self.standing.tolist(), self.texts, strict=True)
+        ]
+
+
+@dataclass(frozen=True, slots=True)
+class Cut:
+    """The pieces of a stretch, arrays of shape (pieces,).
+
+    Piece ``i`` is ``lengths[i]`` bytes of ``octets`` from ``begins[i]`` on; ``standing`` tells
+    where in its document it stands (``INNER`` … ``ONLY``). Pieces ``bounds[i]`` up to
+    ``bounds[i + 1]`` are document ``i``.
+    """
+
+    octets: Octets
+    begins: Ints
+    lengths: Ints
+    standing: Ints
+    bounds: Ints
+
+    def __len__(self) -> int:
+        return len(self.begins)
+
+    def words(self, chosen: Ints) -> packed.Words:
+        """Return the chosen pieces, short ones all, as machine words with their standing."""
+        return packed.packed(
+            self.octets, self.begins[chosen], self.lengths[chosen], self.standing[chosen]
+        )
+
+    def distinct(self, chosen: Ints) -> Distinct:
+        """Return the distinct pieces among the chosen ones."""
+        offsets = np.append(self.begins, len(self.octets) - packed.ROOM)
+        buffers = [None, pa.py_buffer(offsets), pa.py_buffer(self.octets)]
+        every = pa.Array.from_buffers(pa.large_string(), len(self), buffers)
+        encoded = every.take(pa.array(chosen)).dictionary_encode()
+        codes = np.asarray(encoded.indices).astype(np.int64) * 4 + self.standing[chosen]
+        counts = np.bincount(codes, minlength=1)
+        present = np.flatnonzero(counts)
+        number = np.zeros(len(counts), dtype=np.int64)
+        number[present] = np.arange(len(present))
+        form_of = number[codes]
+        firsts = np.empty(len(present), dtype=np.int64)
+        firsts[form_of[::-1]] = chosen[::-1]
+        texts = encoded.dictionary.to_pylist()
+        if len(present) != len(texts):
+            texts = [texts[form] for form in (present // 4).tolist()]
+        return Distinct(texts, present % 4, form_of, firsts, counts[present])
 
 
 class Places:
@@ -74,30 +134,16 @@ class Places:
 
 def cut(stretch: Stretch, places: Places) -> Cut:
     """Return the pieces of ``stretch``, in which no document is empty."""
-    starts = np.sort(np.concatenate((stretch.bounds[:-1], places.within(stretch))))
-    bounds = np.searchsorted(starts, stretch.bounds)
-    form, texts = _dictionary(stretch, starts)
-    standing = np.zeros(len(starts), dtype=np.int64)
+    starting = np.zeros(len(stretch.points) + 1, dtype=np.bool_)
+    starting[places.within(stretch)] = True
+    starting[stretch.bounds] = True
+    edges = np.flatnonzero(starting)
+    bounds = np.searchsorted(edges, stretch.bounds)
+    standing = np.zeros(len(edges) - 1, dtype=np.int64)
     standing[bounds[:-1]] += FIRST
     standing[bounds[1:] - 1] += LAST
-    codes = form * 4 + standing
-    counts = np.bincount(codes, minlength=4 * len(texts))
-    present = np.flatnonzero(counts)
-    number = np.zeros(len(counts), dtype=np.int64)
-    number[present] = np.arange(len(present))
-    form_of = number[codes]
-    keys = [f"{code % 4}{texts[code // 4]}" for code in present.tolist()]
-    first = np.empty(len(present), dtype=np.int64)
-    first[form_of[::-1]] = np.arange(len(starts))[::-1]
-    documents = np.searchsorted(bounds, first, side="right") - 1
-    return Cut(keys, form_of, bounds, counts[present].astype(np.int64), documents)
-
-
-def _dictionary(stretch: Stretch, starts: Ints) -> tuple[Ints, list[str]]:
-    """Return the index of each piece into the distinct texts, and these texts."""
-    data = stretch.joined.encode()
-    edges = np.append(starts, len(stretch.points))
-    offsets = edges if stretch.joined.isascii() else stretch.bytes_before[edges]
-    buffers = [None, pa.py_buffer(offsets.astype(np.int64)), pa.py_buffer(data)]
-    encoded = pa.Array.from_buffers(pa.large_string(), len(starts), buffers).dictionary_encode()
-    return np.asarray(encoded.indices).astype(np.int64), encoded.dictionary.to_pylist()
+    octets = packed.padded(stretch.joined.encode())
+    if not stretch.joined.isascii():
+        # Characters begin at the bytes that continue none (RFC 3629); so does the room after them.
+        edges = np.flatnonzero((octets & 0xC0) != 0x80)[edges]
+    return Cut(octets, edges[:-1], np.diff(edges), standing, bounds)
