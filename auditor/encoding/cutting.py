@@ -10,6 +10,7 @@ import pyarrow as pa
 
 from auditor.text import packed
 from auditor.text.packed import Octets
+from auditor.text.slices import integers
 from auditor.text.stretch import Stretch
 from auditor.vocabulary import adjoining
 from auditor.vocabulary.engine import Ints
@@ -82,7 +83,7 @@ class Cut:
         offsets = np.append(self.begins, len(self.octets) - packed.ROOM)
         buffers = [None, pa.py_buffer(offsets), pa.py_buffer(self.octets)]
         every = pa.Array.from_buffers(pa.large_string(), len(self), buffers)
-        encoded = every.take(pa.array(chosen)).dictionary_encode()
+        encoded = every.take(integers(chosen)).dictionary_encode()
         codes = np.asarray(encoded.indices).astype(np.int64) * 4 + self.standing[chosen]
         counts = np.bincount(codes, minlength=1)
         present = np.flatnonzero(counts)

@@ -59,11 +59,12 @@ def mixed(words: Words) -> Words:
 class PackedNumbers:
     """Numbers of packed strings: a table with open places, looked into for all strings at once.
 
-    There is room for ``most`` strings.
+    There is room for ``most`` strings; those that are added beyond get no number.
     """
 
     def __init__(self, most: int) -> None:
         bits = max(4, (2 * most).bit_length())
+        self._room = most
         self._shift = np.uint64(64 - bits)
         self._last = (1 << bits) - 1
         self._words = np.zeros((1 << bits, 2), dtype=np.uint64)
@@ -87,6 +88,8 @@ class PackedNumbers:
 
     def add(self, words: Words, numbers: Ints) -> None:
         """Number strings that are all distinct and have no number yet."""
+        words, numbers = words[: self._room], numbers[: self._room]
+        self._room -= len(words)
         places = self._first(words)
         left = np.arange(len(words))
         while len(left):

@@ -105,8 +105,8 @@ def data_for(kind):
     return find(descriptions(kind), lambda _: True)
 
 
-# Words short and long, with the same beginnings: pieces of up to 15 bytes are found as machine words,
-# the others as strings.
+# Words short and long, with the same beginnings: pieces of up to 15 bytes are found as machine
+# words, the others as strings.
 WORDS = [
     "a",
     "ab",
