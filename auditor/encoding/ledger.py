@@ -27,7 +27,7 @@ Sink = Callable[[int, Contents], None]
 # Pieces are remembered by hash in this many marks, a power of two.
 _MARKS = 1 << 23
 # Rows that are held before the ledger is emptied.
-MOST_ROWS = 200_000
+MOST_ROWS = 400_000
 
 
 @dataclass
@@ -77,7 +77,7 @@ class Ledger:
         sink: Sink,
         *,
         most_rows: int | None = None,
-        most_characters: int = 8 << 20,
+        most_characters: int = 16 << 20,
     ) -> None:
         self._vocabularies = vocabularies
         self._measure = measure
