@@ -8,7 +8,7 @@ import numpy as np
 import numpy.typing as npt
 import pyarrow as pa
 
-from auditor.text import packed
+from auditor.text import packed, properties
 from auditor.text.packed import Octets
 from auditor.text.slices import integers
 from auditor.text.stretch import Stretch
@@ -102,8 +102,12 @@ class Places:
     """Where cuts are made: where each of ``separations`` allows one."""
 
     def __init__(self, separations: list[Separation]) -> None:
-        self._classes, asked = in_common(separations)
-        self._asked = asked.reshape(-1).astype(np.uint8)
+        classes, asked = in_common(separations)
+        # A code point's class stands in two bytes: as the one before a place, and as the one after.
+        self._classes = classes.astype(np.uint16) * 0x101
+        table = np.zeros((0x100, 0x100), dtype=np.uint8)
+        table[: len(asked), : len(asked)] = asked
+        self._asked = table.reshape(-1)
 
     def within(self, stretch: Stretch) -> Ints:
         """Return the positions inside documents before which a cut stands, in rising order."""
@@ -116,20 +120,22 @@ class Places:
         answers = adjoining.followers()[points[np.minimum(places + 1, len(points) - 1)]]
         answers[edge[places + 1]] = adjoining.END
         # A line end is alone when nothing, or no whitespace, stands before it in its document.
-        alone = edge[places - 1] | ~stretch.whitespace[np.maximum(places - 2, 0)]
-        answers[alone] |= adjoining.LONE
+        lone = np.flatnonzero(asked & adjoining.LONE)
+        ends = places[lone]
+        blank = properties.table(properties.WHITESPACE)[points[np.maximum(ends - 2, 0)]]
+        answers[lone[edge[ends - 1] | ~blank]] |= adjoining.LONE
         return np.asarray(places[(asked & ~(answers | adjoining.OPEN)) == 0])
 
     def _candidates(self, points: npt.NDArray[np.uint32]) -> tuple[Ints, Asked]:
         """Return the places between two classes that are ever cut, and what is asked there."""
         places, asked = [], []
         for begin in range(0, len(points), _BLOCK):
-            found = self._classes[points[begin : begin + _BLOCK + 1]].astype(np.uint16)
-            codes = found[:-1] * adjoining.CLASSES + found[1:]
-            own = np.take(self._asked, codes)
+            found = self._classes.take(points[begin : begin + _BLOCK + 1])
+            codes = (found[:-1] & 0xFF00) | (found[1:] & 0x00FF)
+            own = self._asked.take(codes)
             held = np.flatnonzero(own)
             places.append(held + (begin + 1))
-            asked.append(own[held])
+            asked.append(own.take(held))
         return np.concatenate(places), np.concatenate(asked)
 
 
