@@ -275,10 +275,11 @@ def _ink() -> str:
 def _sample() -> tuple[str, ...]:
     """Return all of ASCII and the first and last character of each general category."""
     found = [chr(point) for point in range(128)]
+    every = properties.every_character()
     for category in _CATEGORIES:
-        # Not kept: each of these tables is a megabyte, and each is looked at once.
-        held = properties.table.__wrapped__(rf"\p{{{category}}}").nonzero()[0].tolist()
-        found += [chr(point) for point in (held[0], held[-1]) if not 0xD800 <= point < 0xE000]
+        ends = (regex.search(f"{way}\\p{{{category}}}", every) for way in ("", "(?r)"))
+        points = [end.start() for end in ends if end is not None]
+        found += [chr(point) for point in points if not 0xD800 <= point < 0xE000]
     return tuple(dict.fromkeys(found))
 
 

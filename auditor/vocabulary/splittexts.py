@@ -14,8 +14,8 @@ from auditor.vocabulary.splits import Splits
 from auditor.vocabulary.tokenizers_engine import TokenizersEngine
 
 # Parts whose tokens are remembered, and tokens of them, before all are forgotten.
-MOST_PARTS = 250_000
-MOST_TOKENS = 1_500_000
+MOST_PARTS = 400_000
+MOST_TOKENS = 2_000_000
 
 
 class SplitTexts:
@@ -85,7 +85,7 @@ class SplitTexts:
         every = pa.Array.from_buffers(pa.large_string(), len(edges) - 1, buffers)
         encoded = every.take(integers(new)).dictionary_encode()
         form = np.asarray(encoded.indices).astype(np.int64)
-        texts = encoded.dictionary.to_pylist()
+        texts = encoded.dictionary
         ids, bounds = self._parts.tokens(texts)
         known = len(self._begins)
         numbers[new] = known + form
