@@ -14,6 +14,7 @@ from auditor.encoding.dotted import DOT, Held, Touching, dotted
 from auditor.encoding.measures import Reading
 from auditor.encoding.shown import Shown, parts_of
 from auditor.tallies.words import BrokenWord, table_of
+from auditor.text.slices import integers
 from auditor.text.stretch import Stretch
 from auditor.vocabulary.engine import Bools, Ints, Inventory
 
@@ -120,7 +121,7 @@ def _table(broken: pa.StringArray) -> pa.Table:
     """Return the rows of words that are ``broken`` without loss."""
     pieces = pc.add(pc.cast(pc.count_substring(broken, DOT), pa.int64()), 1)
     word = pc.replace_substring(broken, DOT, "")
-    unknown = pa.array(np.zeros(len(broken), dtype=np.int64))
+    unknown = integers(np.zeros(len(broken), dtype=np.int64))
     return pa.table([word, broken, pieces, unknown], names=list(BrokenWord._fields))
 
 

@@ -148,15 +148,14 @@ class Documents:
 
     def _measure_cut(self, places: Places, stretch: Stretch, source: int, lines: Ints) -> Counted:
         pieces = cut(stretch, places)
-        new = self._ledger.missing(pieces)
-        if sum(len(pieces.keys[n]) for n in new) > _TOO_DIVERSE * len(stretch.points) + 50_000:
-            return self._measure_whole(stretch, source, lines)
-        self._ledger.take_in(pieces, new, source, lines)
         rows = self._ledger.rows_of(pieces)
-        by_piece = rows[pieces.form_of]
+        new = pieces.distinct(np.flatnonzero(rows < 0))
+        if new.characters > _TOO_DIVERSE * len(stretch.points) + 50_000:
+            return self._measure_whole(stretch, source, lines)
+        by_piece = self._ledger.take_in(pieces, rows, new, source, lines)
         self._check(stretch, by_piece, pieces, lines)
-        self._ledger.count(rows, pieces.counts)
-        self._tell(pieces, new)
+        self._ledger.count(by_piece)
+        self._tell(pieces)
         text = self._ledger.text_columns(by_piece, pieces.bounds)
         text["documents"] = np.ones(len(stretch), dtype=np.int64)
         columns: list[Columns] = [{}] * len(self._vocabularies)
@@ -187,10 +186,10 @@ class Documents:
             columns[place], runs[place] = found.columns, found.runs
             self._sink(place, Contents(found, once, sources, lines))
 
-    def _tell(self, pieces: Cut, new: list[int]) -> None:
+    def _tell(self, pieces: Cut) -> None:
         self.tale.by_pieces += len(pieces.bounds) - 1
-        self.tale.pieces += len(pieces.form_of)
-        self.tale.distinct_pieces += len(new)
+        self.tale.pieces += len(pieces)
+        self.tale.distinct_pieces = self._ledger.measured
 
     def _measure_pieces(self, texts: list[str], standing: Ints) -> tuple[Columns, list[Measured]]:
         edges = Edges(standing >= FIRST, standing % FIRST == LAST)

@@ -11,10 +11,12 @@ from dataclasses import dataclass, field
 
 import numpy as np
 
-from auditor.encoding.cutting import FIRST, Cut
+from auditor.encoding.cutting import FIRST, Cut, Distinct
 from auditor.encoding.measures import Columns
 from auditor.encoding.runprofiles import RunProfiles
 from auditor.encoding.whole import Contents, Measured, RunTable
+from auditor.text import packed
+from auditor.text.packed import PackedNumbers
 from auditor.vocabulary.engine import Ints
 
 # (texts, whether they begin a document, whether they end one) → the columns of text, and the
@@ -24,7 +26,8 @@ Sink = Callable[[int, Contents], None]
 
 # Pieces are remembered by hash in this many marks, a power of two.
 _MARKS = 1 << 23
-_FIRST_DIGIT = str(FIRST)
+# Rows that are held before the ledger is emptied.
+MOST_ROWS = 400_000
 
 
 @dataclass
@@ -73,108 +76,141 @@ class Ledger:
         measure: MeasurePieces,
         sink: Sink,
         *,
-        most_rows: int = 200_000,
-        most_characters: int = 8 << 20,
+        most_rows: int | None = None,
+        most_characters: int = 16 << 20,
     ) -> None:
         self._vocabularies = vocabularies
         self._measure = measure
         self._sink = sink
-        self._most_rows = most_rows
+        self._most_rows = MOST_ROWS if most_rows is None else most_rows
         self._most_characters = most_characters
+        self.measured = 0
         self._met = np.zeros(_MARKS, dtype=np.bool_)
         self._clear()
 
     def _clear(self) -> None:
+        self._numbers = PackedNumbers(self._most_rows)
         self._rows: dict[str, int] = {}
-        self._characters = 0
+        self._used = 0
         self._kept = 0
-        self._passing: list[str] = []
+        self._characters = 0
+        self._passing_characters = 0
         self._blocks: list[_Block] = []
         self._totals = np.zeros(1024, dtype=np.int64)
         self._text = _Table()
         self._tables = [_Table() for _ in range(self._vocabularies)]
         self._profiles = [RunProfiles() for _ in range(self._vocabularies)]
 
-    def missing(self, cut: Cut) -> list[int]:
-        """Return the indices of the keys of ``cut`` that are not in the ledger."""
-        known = np.fromiter(map(self._rows.__contains__, cut.keys), np.bool_, len(cut.keys))
-        new: list[int] = np.flatnonzero(~known).tolist()
-        return new
+    def rows_of(self, cut: Cut) -> Ints:
+        """Return the row of each piece of ``cut``, -1 for those that are not in the ledger.
 
-    def take_in(self, cut: Cut, new: list[int], source: int, lines: Ints) -> None:
-        """Measure the ``new`` keys of ``cut``; ``lines`` (documents,) is where documents stand.
+        Short pieces are found by their bytes, as machine words; the few others by their text.
+        """
+        short = cut.lengths <= packed.LONGEST
+        rows = np.empty(len(cut), dtype=np.int64)
+        places = np.flatnonzero(short)
+        rows[places] = self._numbers.find(cut.words(places))
+        places = np.flatnonzero(~short)
+        if len(places):
+            distinct = cut.distinct(places)
+            known = [self._rows.get(key, -1) for key in distinct.keyed()]
+            rows[places] = np.array(known, dtype=np.int64)[distinct.form_of]
+        return rows
 
-        When half of the room is taken, pieces met for the first time, and once, are let go again by
-        ``release``: most of them never come back.
+    def take_in(self, cut: Cut, rows: Ints, new: Distinct, source: int, lines: Ints) -> Ints:
+        """Measure the ``new`` pieces of ``cut``, whose ``rows`` are -1; return all rows.
+
+        ``lines`` (documents,) is where documents stand. When half of the room is taken, pieces met
+        for the first time, and once, are let go again by ``release``: most of them never come back.
         """
         lasting, passing = self._parted(cut, new)
-        full = len(self._rows) + len(lasting) > self._most_rows
+        full = self._used + len(lasting) > self._most_rows
         if full or self._characters > self._most_characters:
             self.empty()
-            lasting, passing = self._parted(cut, list(range(len(cut.keys))))
-        self._measure_blocks(cut, lasting, source, lines)
-        self._kept = len(self._rows)
-        self._measure_blocks(cut, passing, source, lines)
-        self._passing = [cut.keys[place] for place in passing]
+            rows, new = np.full_like(rows, -1), cut.distinct(np.arange(len(cut)))
+            lasting, passing = self._parted(cut, new)
+        if not len(new):
+            return rows
+        places = np.searchsorted(cut.bounds, new.firsts, side="right") - 1
+        row_of = np.empty(len(new), dtype=np.int64)
+        for chosen in (lasting, passing):
+            self._kept = self._used
+            for begins in (False, True):
+                part = chosen[(new.standing[chosen] >= FIRST) == begins]
+                if len(part):
+                    row_of[part] = self._measure_block(new, part, source, lines[places[part]])
+        self._remember(cut, new, lasting, row_of)
+        self._passing_characters = sum(len(new.texts[place]) for place in passing.tolist())
+        rows[rows < 0] = row_of[new.form_of]
+        return rows
 
-    def _parted(self, cut: Cut, new: list[int]) -> tuple[list[int], list[int]]:
+    def _parted(self, cut: Cut, new: Distinct) -> tuple[Ints, Ints]:
         """Return those of ``new`` that are worth keeping, and those met once and never before.
 
         Which is which is remembered by a hash, and may be wrong: it decides what is kept, never
         what is counted.
         """
-        places = np.array(new, dtype=np.int64)
-        marks = np.array([hash(cut.keys[place]) & _MARKS - 1 for place in new], dtype=np.int64)
-        known = self._met[marks] | (cut.counts[places] > 1)
+        marks = self._hashes(cut, new) & (_MARKS - 1)
+        known = self._met[marks] | (new.counts > 1)
         # While there is room, a piece met again need not be measured again.
-        known |= len(self._rows) + len(new) <= self._most_rows // 2
+        known |= self._used + len(new) <= self._most_rows // 2
         self._met[marks] = True
-        return places[known].tolist(), places[~known].tolist()
+        return np.flatnonzero(known), np.flatnonzero(~known)
 
-    def _measure_blocks(self, cut: Cut, places: list[int], source: int, lines: Ints) -> None:
-        for begins in (False, True):
-            keys = [place for place in places if (cut.keys[place][0] >= _FIRST_DIGIT) is begins]
-            if keys:
-                self._measure_block(cut, keys, source, lines)
+    def _hashes(self, cut: Cut, new: Distinct) -> Ints:
+        found = np.empty(len(new), dtype=np.int64)
+        short = cut.lengths[new.firsts] <= packed.LONGEST
+        words = cut.words(new.firsts[short])
+        found[short] = (packed.mixed(words) >> np.uint64(1)).astype(np.int64)
+        places = np.flatnonzero(~short)
+        found[places] = [hash(new.texts[place]) for place in places.tolist()]
+        return found
+
+    def _remember(self, cut: Cut, new: Distinct, lasting: Ints, row_of: Ints) -> None:
+        """Note in which rows the lasting ones of ``new`` stand."""
+        short = cut.lengths[new.firsts[lasting]] <= packed.LONGEST
+        places = lasting[short]
+        self._numbers.add(cut.words(new.firsts[places]), row_of[places])
+        rows = row_of.tolist()
+        for place in lasting[~short].tolist():
+            self._rows[f"{new.standing[place]}{new.texts[place]}"] = rows[place]
 
     def release(self) -> None:
         """Hand over and forget the pieces that were not worth keeping."""
         while self._blocks and self._blocks[-1].begin >= self._kept:
             self._hand_over(self._blocks.pop())
-        for key in self._passing:
-            del self._rows[key]
-        self._characters -= sum(map(len, self._passing)) - len(self._passing)
-        self._totals[self._kept : self._kept + len(self._passing)] = 0
-        self._passing = []
+        self._totals[self._kept : self._used] = 0
+        self._characters -= self._passing_characters
+        self._passing_characters = 0
+        self._used = self._kept
         for table in (self._text, *self._tables):
             table.used = self._kept
 
-    def _measure_block(self, cut: Cut, places: list[int], source: int, lines: Ints) -> None:
-        keys = [cut.keys[place] for place in places]
-        texts = [key[1:] for key in keys]
-        text, measured = self._measure(texts, np.array([int(key[0]) for key in keys]))
-        begin = len(self._rows)
-        self._rows.update({key: begin + place for place, key in enumerate(keys)})
+    def _measure_block(self, new: Distinct, places: Ints, source: int, lines: Ints) -> Ints:
+        """Measure the pieces at ``places`` of ``new`` and return their rows."""
+        texts = [new.texts[place] for place in places.tolist()]
+        text, measured = self._measure(texts, new.standing[places])
+        begin, count = self._used, len(texts)
+        self._used += count
+        self.measured += count
         self._characters += sum(map(len, texts))
-        self._text.extend(text, len(keys))
+        self._text.extend(text, count)
         for table, profiles, found in zip(self._tables, self._profiles, measured, strict=True):
-            profile = profiles.of(found.runs, len(keys))
-            table.extend({**found.columns, "profile": profile}, len(keys))
+            profile = profiles.of(found.runs, count)
+            table.extend({**found.columns, "profile": profile}, count)
         held = [found.contents_only() for found in measured]
-        sources = np.full(len(keys), source, dtype=np.int64)
-        self._blocks.append(_Block(begin, held, sources, lines[cut.firsts[places]]))
+        sources = np.full(count, source, dtype=np.int64)
+        self._blocks.append(_Block(begin, held, sources, lines))
+        return np.arange(begin, self._used)
 
-    def rows_of(self, cut: Cut) -> Ints:
-        """Return the row of each key of ``cut``, all of which are in the ledger."""
-        return np.fromiter(map(self._rows.__getitem__, cut.keys), np.int64, len(cut.keys))
-
-    def count(self, rows: Ints, counts: Ints) -> None:
-        """Add occurrences: row ``rows[i]`` occurs ``counts[i]`` times more; rows are distinct."""
-        if len(self._totals) < len(self._rows):
-            grown = np.zeros(2 * len(self._rows), dtype=np.int64)
+    def count(self, rows: Ints) -> None:
+        """Add one occurrence of the piece in each of ``rows``."""
+        if len(self._totals) < self._used:
+            grown = np.zeros(2 * self._used, dtype=np.int64)
             grown[: len(self._totals)] = self._totals
             self._totals = grown
-        self._totals[rows] += counts
+        times = np.bincount(rows)
+        self._totals[: len(times)] += times
 
     def text_columns(self, rows: Ints, bounds: Ints) -> Columns:
         """Return the columns of text of documents whose pieces are ``rows``."""

@@ -132,7 +132,7 @@ class WholeTexts:
         )
 
     def _run_table(self, reading: Reading, runs: Runs) -> RunTable:
-        probed = [self._fates.of(form) for form in runs.forms]
+        probed = self._fates.of_all(runs.forms)
         kinds = [KINDS.index(form.kind) for form in runs.forms]
         by_form = np.zeros((len(runs.forms), 2 + len(FATES) + 1), dtype=np.int64)
         for place, found in enumerate(probed):

@@ -64,7 +64,9 @@ class Processes(Generic[Outcome_co, Finished_co]):
         self._pool = ProcessPoolExecutor(
             workers, mp_context=context, initializer=_start, initargs=(make, meeting)
         )
-        self.facts = self._pool.submit(_facts).result()
+        # A process starts when a task finds none idle: with one for each, all start at once.
+        asked = [self._pool.submit(_facts) for _ in range(workers)]
+        self.facts = asked[0].result()
 
     def measured(self, tasks: Iterable[tuple[Any, ...]]) -> Iterator[Outcome_co]:
         """Yield the outcome of each task, in their order.

@@ -20,6 +20,7 @@ import numpy.typing as npt
 import pyarrow as pa
 
 from auditor.tallies.base import State, Tally
+from auditor.text.slices import integers
 
 Ints = npt.NDArray[np.int64]
 
@@ -83,7 +84,7 @@ class WordsTally(Tally):
 
     def add_table(self, rows: pa.Table, counts: Ints) -> None:
         """Add ``counts`` (rows,) occurrences of ``rows``, as ``table_of`` makes them."""
-        counted = rows.append_column("count", pa.array(counts)).cast(_COUNTED)
+        counted = rows.append_column("count", integers(counts)).cast(_COUNTED)
         self.take(counted if counts.all() else counted.filter(counts > 0))
 
     def take(self, counted: pa.Table) -> None:

@@ -32,6 +32,15 @@ def strings(points: Points, lengths: Ints) -> pa.LargeStringArray:
     )
 
 
+def integers(values: Ints) -> pa.Int64Array:
+    """Return integers as an Arrow array over the same memory.
+
+    Arrow's own way from NumPy first imports pandas, where that is installed.
+    """
+    held = pa.py_buffer(np.ascontiguousarray(values, dtype=np.int64))
+    return pa.Array.from_buffers(pa.int64(), len(values), [None, held])
+
+
 def distinct(points: Points, starts: Ints, ends: Ints) -> tuple[Ints, list[str]]:
     """Return the index of each part of ``points`` into the distinct parts, and these."""
     lengths = ends - starts

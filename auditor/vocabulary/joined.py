@@ -10,6 +10,8 @@ import numpy as np
 from auditor.vocabulary import adjoining
 from auditor.vocabulary.engine import Bools, Encoding, Engine, Ints, bounds_of
 from auditor.vocabulary.separation import Separation
+from auditor.vocabulary.splittexts import SplitTexts
+from auditor.vocabulary.tokenizers_engine import TokenizersEngine
 
 # A fence stands between two parts that are no cut of themselves: its beginning makes a cut after
 # the one, its end a cut before the other. The first of each that serves is taken.
@@ -28,7 +30,8 @@ class JoinedParts:
     Parts are laid end to end. Where the last character of a part and the first of the next are no
     cut, a fence stands between them: before it there is a cut by the part before, after it one by
     the part after. Parts that no fence serves go one by one, and so do all when a string that is an
-    added token comes about.
+    added token comes about. Where it is known how the vocabulary splits, parts are taken apart
+    instead (`splits`).
     """
 
     def __init__(self, separation: Separation) -> None:
@@ -36,6 +39,11 @@ class JoinedParts:
         self._classes = separation.classes
         self._asked = separation.asked
         contents = separation.whole_for
+        self._split_texts = (
+            SplitTexts(self._engine, separation.splits, separation.whole_for)
+            if separation.splits and isinstance(self._engine, TokenizersEngine)
+            else None
+        )
         self._added = re.compile("|".join(map(re.escape, contents))) if contents else None
         self.has_decoder = self._engine.has_decoder
         self.alters = self._engine.alters
@@ -44,6 +52,8 @@ class JoinedParts:
 
     def encode(self, texts: list[str]) -> Encoding:
         """Return the tokens of ``texts``."""
+        if self._split_texts is not None and not self._holds_added("\0".join(texts)):
+            return self._split_texts.encode(texts)
         if len(texts) < _WORTH_IT:
             return self._engine.encode(texts)
         edges = _Edges.of(texts)
@@ -54,7 +64,7 @@ class JoinedParts:
         fences = np.where(apart, _NONE, begin[places[:-1]] * len(_ENDS) + end[places[1:]])
         groups = _Groups(places, fences)
         strings = groups.strings(texts)
-        if self._added is not None and any(self._added.search(string) for string in strings):
+        if any(map(self._holds_added, strings)):
             return self._engine.encode(texts)
         alone = np.flatnonzero(~joinable)
         encoded = self._engine.encode([*strings, *(texts[place] for place in alone.tolist())])
@@ -64,6 +74,9 @@ class JoinedParts:
         """Return the ids of ``texts`` end to end, and the bounds of each text among them."""
         found = self.encode(texts)
         return found.ids, found.bounds
+
+    def _holds_added(self, string: str) -> bool:
+        return self._added is not None and self._added.search(string) is not None
 
     def decode(self, ids: list[list[int]]) -> list[str]:
         """Return the texts that ``ids`` stand for."""

@@ -52,34 +52,39 @@ _WHITESPACE_SAMPLE = " \t\n\r\v\f\x85\u00a0\u1680\u2003\u2028\u2029\u202f\u205f\
 
 
 @dataclass(frozen=True, slots=True)
-class _Part:
+class Part:
+    """An element of an alternative, with how often it is matched; ``look`` matches no character."""
+
     source: str
     quantifier: str
     look: bool
 
     @property
     def optional(self) -> bool:
+        """Whether it is matched once or not at all."""
         return self.quantifier in {"?", "?+"}
 
     @property
     def repeated(self) -> bool:
+        """Whether it may be matched more than once."""
         return self.quantifier[:1] in {"*", "+", "{"}
 
     def matches(self, text: str) -> bool:
+        """Return whether it matches all of ``text``, taken once."""
         return regex.fullmatch(self.source, text, flags=regex.V0) is not None
 
 
 @cache
 def splits_before_space(pattern: str) -> bool:
     """Return whether the first claim is proved for ``pattern``."""
-    alternatives = _alternatives(pattern)
+    alternatives = alternatives_of(pattern)
     return alternatives is not None and all(map(_is_admitted, alternatives))
 
 
 @cache
 def splits_between(pattern: str) -> Bools:
     """Return between which classes a split is proved, shape (CLASSES, CLASSES): *x*, then *y*."""
-    alternatives = _alternatives(pattern)
+    alternatives = alternatives_of(pattern)
     if alternatives is None or not all(map(_is_admitted, alternatives)):
         return np.zeros((adjoining.CLASSES, adjoining.CLASSES), dtype=np.bool_)
     joined = np.zeros((adjoining.CLASSES, adjoining.CLASSES), dtype=np.bool_)
@@ -93,7 +98,7 @@ def splits_between(pattern: str) -> Bools:
 def takes_line_ends(pattern: str) -> bool:
     """Return whether *x* may be a line end with other whitespace before it."""
     looked = False
-    for parts in _alternatives(pattern) or []:
+    for parts in alternatives_of(pattern) or []:
         if _takes_all_to_line_end(parts):
             return True
         looks = any(part.look for part in parts)
@@ -103,15 +108,15 @@ def takes_line_ends(pattern: str) -> bool:
     return not looked
 
 
-def _takes_all_to_line_end(parts: list[_Part]) -> bool:
+def _takes_all_to_line_end(parts: list[Part]) -> bool:
     """Return whether ``parts`` are `\\s*[\\r\\n]+`, or that with another class of line ends."""
     if len(parts) != 2 or (parts[0].source, parts[0].quantifier) != ("\\s", "*"):
         return False
     last = parts[1]
-    return _is_whitespace_only(last) and last.matches("\n") and last.quantifier in {"", "+", "++"}
+    return is_whitespace_only(last) and last.matches("\n") and last.quantifier in {"", "+", "++"}
 
 
-def _takes_all_to_text_end(parts: list[_Part]) -> bool:
+def _takes_all_to_text_end(parts: list[Part]) -> bool:
     """Return whether ``parts`` are `\\s++$`: the same whitespace, when nothing stands after it."""
     return [(part.source, part.quantifier) for part in parts] == [("\\s", "++"), ("$", "")]
 
@@ -120,31 +125,31 @@ def _takes_all_to_text_end(parts: list[_Part]) -> bool:
 _Atom = tuple[str, bool]
 
 
-def _following(parts: list[_Part], *, ignore_case: bool) -> Iterator[tuple[_Atom, _Atom]]:
+def _following(parts: list[Part], *, ignore_case: bool) -> Iterator[tuple[_Atom, _Atom]]:
     """Yield each two elements of which the second may match after the first in one match."""
     held = [list(_atoms(part, ignore_case=ignore_case)) for part in parts]
     for place, (part, lefts) in enumerate(zip(parts, held, strict=True)):
         rights = [atom for later in held[place + 1 :] for atom in later]
         rights += lefts if part.repeated else []
         yield from ((left, right) for left in lefts for right in rights)
-        for branch in _inner(part):
+        for branch in branches_within(part):
             insensitive = ignore_case or part.source.startswith("(?i:")
             yield from _following(branch, ignore_case=insensitive)
 
 
-def _atoms(part: _Part, *, ignore_case: bool) -> Iterator[_Atom]:
+def _atoms(part: Part, *, ignore_case: bool) -> Iterator[_Atom]:
     if part.look:
         return
     if not part.source.startswith("("):
         yield part.source, ignore_case
         return
     insensitive = ignore_case or part.source.startswith("(?i:")
-    for branch in _inner(part):
+    for branch in branches_within(part):
         for inner in branch:
             yield from _atoms(inner, ignore_case=insensitive)
 
 
-def _inner(part: _Part) -> list[list[_Part]]:
+def branches_within(part: Part) -> list[list[Part]]:
     """Return the alternatives within a group; none of anything else."""
     element = _ELEMENT.match(part.source)
     if part.look or element is None or element["group"] is None:
@@ -179,7 +184,7 @@ def _members() -> tuple[str, ...]:
     return (*ascii_characters, *beyond)
 
 
-def _alternatives(pattern: str) -> list[list[_Part]] | None:
+def alternatives_of(pattern: str) -> list[list[Part]] | None:
     """Return the parts of each alternative; ``None`` when the pattern cannot be read."""
     try:
         found = [_parts(branch) for branch in _branches(pattern)]
@@ -208,7 +213,7 @@ def _branches(pattern: str) -> list[str]:
     return [*found, pattern[begin:]]
 
 
-def _parts(branch: str) -> list[_Part]:
+def _parts(branch: str) -> list[Part]:
     parts, place = [], 0
     while place < len(branch):
         element = _ELEMENT.match(branch, place)
@@ -219,32 +224,38 @@ def _parts(branch: str) -> list[_Part]:
         if quantifier is not None:
             place = quantifier.end()
         times = "" if quantifier is None else quantifier[0]
-        parts.append(_Part(element[0], times, element["look"] is not None))
+        parts.append(Part(element[0], times, element["look"] is not None))
     if not parts:
         raise ValueError(branch)
     return parts
 
 
-def _is_admitted(parts: list[_Part]) -> bool:
-    if all(part.look or _is_whitespace_only(part) for part in parts):
+def _is_admitted(parts: list[Part]) -> bool:
+    if all(part.look or is_whitespace_only(part) for part in parts):
         looks = [part for part in parts if part.look]
         return not looks or (len(looks) == 1 and parts[-1].look and len(parts) > 1)
-    if any(part.look for part in parts):
+    if any(map(looks_ahead, parts)):
         return False
     body = parts[1:] if parts[0].optional else parts
-    return bool(body) and not any(_may_hold(part, " ") for part in body)
+    return bool(body) and not any(may_hold(part, " ") for part in body)
 
 
-def _may_hold(part: _Part, sample: str) -> bool:
+def looks_ahead(part: Part) -> bool:
+    """Return whether an element looks ahead, or one within a group does."""
+    return part.look or any(inner.look for branch in branches_within(part) for inner in branch)
+
+
+def may_hold(part: Part, sample: str) -> bool:
     """Return whether an element can match a character of ``sample``; of a group, any element."""
     if part.look:
         return False
     if not part.source.startswith("("):
         return any(part.matches(character) for character in sample)
-    return any(_may_hold(inner, sample) for branch in _inner(part) for inner in branch)
+    return any(may_hold(inner, sample) for branch in branches_within(part) for inner in branch)
 
 
-def _is_whitespace_only(part: _Part) -> bool:
+def is_whitespace_only(part: Part) -> bool:
+    """Return whether an element, no group, matches nothing but whitespace."""
     if part.look or part.source.startswith("("):
         return False
     if part.source in {"\\s", "\\r", "\\n", "\\t", " "}:
@@ -264,10 +275,11 @@ def _ink() -> str:
 def _sample() -> tuple[str, ...]:
     """Return all of ASCII and the first and last character of each general category."""
     found = [chr(point) for point in range(128)]
+    every = properties.every_character()
     for category in _CATEGORIES:
-        # Not kept: each of these tables is a megabyte, and each is looked at once.
-        held = properties.table.__wrapped__(rf"\p{{{category}}}").nonzero()[0].tolist()
-        found += [chr(point) for point in (held[0], held[-1]) if not 0xD800 <= point < 0xE000]
+        ends = (regex.search(f"{way}\\p{{{category}}}", every) for way in ("", "(?r)"))
+        points = [end.start() for end in ends if end is not None]
+        found += [chr(point) for point in points if not 0xD800 <= point < 0xE000]
     return tuple(dict.fromkeys(found))
 
 

@@ -2,6 +2,7 @@
 
 from __future__ import annotations
 
+from collections.abc import Iterable
 from dataclasses import dataclass
 from itertools import chain, islice
 from typing import Literal
@@ -111,10 +112,14 @@ def _held_words(inventory: Inventory, prefix: str, suffix: str) -> list[str]:
     and many scripts write none.
     """
     found = [_bare(inventory, number, prefix, suffix) for number in range(len(inventory.entries))]
-    words = list(dict.fromkeys(word for word in found if word and _LETTERS.fullmatch(word)))
-    plain = [word for word in words if word.isascii()]
-    chosen = plain if len(plain) >= 2 else words
+    chosen = _words(word for word in found if word and word.isascii())
+    if len(chosen) < 2:
+        chosen = _words(word for word in found if word)
     return chosen[:: max(1, len(chosen) // _PAIRS)][:_PAIRS]
+
+
+def _words(texts: Iterable[str]) -> list[str]:
+    return [text for text in dict.fromkeys(texts) if _LETTERS.fullmatch(text)]
 
 
 def _bare(inventory: Inventory, number: int, prefix: str, suffix: str) -> str | None:

@@ -29,6 +29,7 @@ from auditor.vocabulary.patterns import (
 )
 from auditor.vocabulary.ranks_engine import RanksEngine
 from auditor.vocabulary.sentencepiece_engine import SentencePieceEngine
+from auditor.vocabulary.splits import Splits
 from auditor.vocabulary.steps import METASPACE, rejoined, steps_of
 from auditor.vocabulary.tokenizers_engine import TokenizersEngine
 
@@ -64,6 +65,8 @@ class Separation:
     to be decoded before those of such a part, as something always stands before it. ``classes``
     gives the class of each code point, ``asked`` what is asked of a place between two classes (see
     `adjoining`). A document that holds one of ``whole_for`` is encoded whole.
+    ``splits`` are the places where tokens alone are proved to part, ``None`` where that is not
+    known: there are more of them.
     """
 
     later: Engine
@@ -71,6 +74,7 @@ class Separation:
     classes: Bytes
     asked: Bytes
     whole_for: tuple[str, ...]
+    splits: Splits | None = None
 
 
 def in_common(separations: list[Separation]) -> tuple[Bytes, Bytes]:
@@ -90,9 +94,10 @@ def _separation(
     classes: Bytes,
     asked: Bytes,
     whole_for: tuple[str, ...] = (),
+    splits: Splits | None = None,
 ) -> Separation:
     anchor = later.encode([vocabulary.letters[0]]).ids.tolist() if later.has_decoder else []
-    return Separation(later, tuple(anchor), classes, asked, whole_for)
+    return Separation(later, tuple(anchor), classes, asked, whole_for, splits)
 
 
 def separate(vocabulary: Vocabulary) -> Separation | str:
@@ -153,7 +158,20 @@ def _tokenizers(vocabulary: Vocabulary, engine: TokenizersEngine) -> Separation 
         return "its normaliser is not proved to act part by part"
     classes = _still_words(adjoining.classes(), steps)
     later = _without_prefix(engine, splitters)
-    return _separation(vocabulary, later, classes, asked, contents)
+    splits = _splits(later)
+    return _separation(vocabulary, later, classes, asked, contents, splits)
+
+
+def _splits(later: TokenizersEngine) -> Splits | None:
+    """Return where the first step always splits, when it is a pattern: no later step joins parts.
+
+    Only where nothing but patterns and merges of bytes decides.
+    """
+    steps = steps_of(later.description, "pre_tokenizer")
+    if not later.splits_bytes or any(s["type"] not in {"Split", "ByteLevel"} for s in steps):
+        return None
+    pattern = _pattern_of(steps[0])
+    return Splits.of(pattern) if pattern and splits_before_space(pattern) else None
 
 
 def _by_splitters(steps: list[dict[str, Any]]) -> Bytes | None:

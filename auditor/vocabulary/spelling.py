@@ -77,7 +77,9 @@ class Spelling:
 def _data(texts: list[str]) -> tuple[Octets, Ints]:
     """Return the UTF-8 of ``texts`` end to end, and where each begins in it."""
     joined = "".join(texts)
-    data = joined.encode()
-    alike = len(data) == len(joined)
-    lengths = [len(text) if alike else len(text.encode()) for text in texts]
-    return np.frombuffer(data, dtype=np.uint8), bounds_of(lengths)
+    data = np.frombuffer(joined.encode(), dtype=np.uint8)
+    edges = bounds_of([len(text) for text in texts])
+    if len(data) > len(joined):
+        # Characters begin at the bytes that continue none (RFC 3629).
+        edges = np.append(np.flatnonzero((data & 0xC0) != 0x80), len(data))[edges]
+    return data, edges

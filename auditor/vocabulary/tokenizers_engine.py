@@ -2,6 +2,7 @@
 
 from __future__ import annotations
 
+from collections.abc import Callable
 from functools import cached_property
 from itertools import chain
 from typing import Any
@@ -25,6 +26,9 @@ from auditor.vocabulary.engine import (
 )
 from auditor.vocabulary.spelling import Spelling
 from auditor.vocabulary.steps import METASPACE, rejoined, steps_of
+
+# Texts → the ids of their tokens end to end, and the bounds of each text among them.
+Tokens = Callable[[list[str]], tuple[Ints, Ints]]
 
 # Characters that Unicode's composed form leaves as they are, whatever stands beside them (UAX #15,
 # section 9): what is settled of an assigned character stays so in later versions.
@@ -84,23 +88,24 @@ class TokenizersEngine:
         """Whether the decoder is the byte-level one alone."""
         return [step["type"] for step in steps_of(self.description, "decoder")] == ["ByteLevel"]
 
-    def encode(self, texts: list[str]) -> Encoding:
+    def encode(self, texts: list[str], tokens: Tokens | None = None) -> Encoding:
         """Return the tokens of ``texts``.
 
         Where tokens spell a text that no normaliser alters, byte by byte, spans follow from that;
-        else the library is asked for them, which costs it as much again as the tokens.
+        else the library is asked for them, which costs it as much again as the tokens. The ids of
+        such texts are asked of ``tokens`` when it is given.
         """
         chosen = self._may_be_spelled(texts)
         if not chosen.any():
             return self.encode_with_offsets(texts)
         likely = _picked(texts, chosen)
-        ids, bounds = self.ids_of(likely)
-        spelled = self._spelling.spells(ids, bounds, likely)
+        ids, bounds = (tokens or self.ids_of)(likely)
+        spelled = self.spelling.spells(ids, bounds, likely)
         if not spelled.all():
             lengths = np.diff(bounds)
             ids, bounds = ids[np.repeat(spelled, lengths)], bounds_of(lengths[spelled])
             chosen[chosen] = spelled
-        found = self._spelling.encoding(ids, bounds, _picked(texts, chosen))
+        found = self.spelling.encoding(ids, bounds, _picked(texts, chosen))
         if chosen.all():
             return found
         others = self.encode_with_offsets(_picked(texts, ~chosen))
@@ -116,10 +121,19 @@ class TokenizersEngine:
         bounds = bounds_of([len(ids) for ids in found])
         return np.fromiter(chain.from_iterable(found), np.int64, int(bounds[-1])), bounds
 
+    def unaltered_tokens(self, texts: list[str]) -> tuple[Ints, Ints]:
+        """Return what ``ids_of`` does for texts that the normaliser leaves alone, sooner."""
+        normalizer = self._library.normalizer
+        self._library.normalizer = None
+        try:
+            return self.ids_of(texts)
+        finally:
+            self._library.normalizer = normalizer
+
     def _may_be_spelled(self, texts: list[str]) -> Bools:
         """Return which texts the normaliser leaves alone, none where tokens never spell."""
         unaltered = self.unaltered
-        if unaltered is None or not self._splits_bytes:
+        if unaltered is None or not self.splits_bytes:
             return np.zeros(len(texts), dtype=np.bool_)
         joined = "".join(texts)
         if joined.isascii():
@@ -140,7 +154,7 @@ class TokenizersEngine:
         return properties.table(_COMPOSED if steps == {"NFC"} else _ASCII)
 
     @cached_property
-    def _splits_bytes(self) -> bool:
+    def splits_bytes(self) -> bool:
         """Whether nothing but bytes, patterns and merges decides on the tokens."""
         model = self.description["model"]
         splitters = steps_of(self.description, "pre_tokenizer")
@@ -154,7 +168,8 @@ class TokenizersEngine:
         )
 
     @cached_property
-    def _spelling(self) -> Spelling:
+    def spelling(self) -> Spelling:
+        """The entries as bytes."""
         return Spelling.of(self._inventory.entry_bytes or [])
 
     def encode_with_offsets(self, texts: list[str]) -> Encoding:

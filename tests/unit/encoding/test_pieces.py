@@ -14,6 +14,7 @@ from hypothesis import find, given, settings
 from hypothesis import strategies as st
 
 import auditor.encoding.documents as encoding
+from auditor.encoding import ledger
 from auditor.encoding.documents import Documents, SeparationError
 from auditor.runs.tallied import ContentTallies
 from auditor.tallies.groups import groupings
@@ -102,6 +103,41 @@ def test_these_kinds_are_cut(kind, folder):
 
 def data_for(kind):
     return find(descriptions(kind), lambda _: True)
+
+
+# Words short and long, with the same beginnings: pieces of up to 15 bytes are found as machine
+# words, the others as strings.
+WORDS = [
+    "a",
+    "ab",
+    "ab" * 7,
+    "ab" * 7 + "1",
+    "ab" * 8,
+    "ab" * 20,
+    "Aéé",
+    "é" * 7,
+    "é" * 8,
+    "中" * 5,
+]
+long_texts = st.lists(
+    st.lists(st.sampled_from([*WORDS, " ", " ", ".", "\n"]), max_size=12).map("".join),
+    min_size=1,
+    max_size=24,
+)
+
+
+@pytest.mark.parametrize("kind", ["byte-level", "bert", "no splitter"])
+@pytest.mark.parametrize("rows", [1, 4, 12])
+@settings(max_examples=20)
+@given(data=st.data())
+def test_a_ledger_of_any_size_gives_the_same(kind, rows, folder, data):
+    """Emptied after every batch, now and then, and with pieces met once let go again."""
+    description, documents = data.draw(descriptions(kind)), data.draw(long_texts)
+    vocabulary = opened(description, folder)
+    with pytest.MonkeyPatch.context() as patch:
+        patch.setattr(ledger, "MOST_ROWS", rows)
+        columns, tallies, _ = measured(vocabulary, documents, whole=False)
+    assert (columns, tallies) == measured(vocabulary, documents, whole=True)[:2]
 
 
 def test_a_wrong_cut_is_noticed_by_the_run(folder, monkeypatch):
