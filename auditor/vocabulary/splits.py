@@ -43,10 +43,10 @@ class Splits:
     def of(cls, pattern: str) -> Splits:
         """Return what is proved of ``pattern``, which must be proved to split before a space."""
         apart = splits_between(pattern)
-        known = np.arange(adjoining.CLASSES) < adjoining.CLOSED
-        before = _flags(_INK)
+        # Engines do not agree on which control characters are whitespace: none is after a place.
+        after, before = _flags((*_INK, *adjoining.WHITESPACE)), _flags(_INK)
         before[adjoining.LINE_END] = takes_line_ends(pattern)
-        apart = apart & np.outer(before, known)
+        apart = apart & np.outer(before, after)
         # What a look-ahead sees behind whitespace is whether more of it follows.
         apart[adjoining.LINE_END] &= _flags(_INK)
         apart[adjoining.SPACED, adjoining.SPACE] = True

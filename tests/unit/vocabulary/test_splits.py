@@ -49,7 +49,7 @@ def split(pattern: str, text: str) -> list[str]:
 
 
 @pytest.mark.parametrize("name", list(PATTERNS))
-@settings(max_examples=400)
+@settings(max_examples=200)
 @given(texts=hard_texts)
 def test_parts_split_alone_as_in_the_whole(name, texts):
     """By the library that encodes, over texts that lie end to end."""
@@ -57,6 +57,17 @@ def test_parts_split_alone_as_in_the_whole(name, texts):
     whole = [part for text in texts for part in split(pattern, text)]
     parts = parts_of(Splits.of(pattern), texts)
     assert [part for text in parts for part in split(pattern, text)] == whole
+
+
+@pytest.mark.parametrize("name", list(PATTERNS))
+def test_every_two_characters_of_ascii_split(name):
+    """Whatever is said of two characters is so for the library, and for one of each class."""
+    splits = Splits.of(PATTERNS[name])
+    every = [*map(chr, range(128)), "é", "中", "²", "Ⅷ", "ﾞ"]
+    pairs = [one + other for one in every for other in every]
+    split_alone = [pair for pair in pairs if 1 in places_in(splits, [pair])]
+    assert len(split_alone) > 3000
+    assert all(split(PATTERNS[name], pair) == list(pair) for pair in split_alone)
 
 
 # A text and its parts, by pattern: finer than pieces, which the rules of words hold together.
@@ -135,7 +146,7 @@ def rows(encoding):
 
 @pytest.mark.parametrize("kind", BYTE_LEVEL)
 @pytest.mark.parametrize("most", [0, 3, 1000])
-@settings(max_examples=40)
+@settings(max_examples=20)
 @given(data=st.data())
 def test_texts_encoded_by_parts_are_those_of_the_library(kind, most, folder, data):
     """Twice over, so that parts are remembered: with room for none, for few, and for all."""
