@@ -9,7 +9,7 @@ from typing import Any
 from jinja2 import Environment, PackageLoader, StrictUndefined
 from markupsafe import Markup, escape
 
-from auditor.report import answers, bins, charts, formatting
+from auditor.report import answers, bins, charts, formatting, policy_answers
 from auditor.report.answers import Excerpt, Sentence
 from auditor.report.meanings import MEANINGS
 from auditor.report.questions import QUESTIONS
@@ -33,15 +33,17 @@ _SLICE_COLUMNS = (
 _LIMIT_DRAWN = 4
 
 
-def render(audit: Json, worst: WorstWords) -> str:
+def render(audit: Json, worst: WorstWords, policy: Json | None = None) -> str:
     """Return the page for an `audit.json` document and the costliest words of each vocabulary.
 
     ``worst`` holds (vocabulary, [(word, count), …]) in the order of `tables.worst_words`; empty
-    when the audit was made without excerpts. The same input gives the same text.
+    when the audit was made without excerpts; ``policy`` is a `policy.json` document. The same input
+    gives the same text.
     """
     template = environment().get_template("report.html.jinja")
     return template.render(
         audit=audit,
+        policy=policy,
         slice_sets=[_set(number, audit, *found) for number, found in enumerate(sets(audit))],
         word_tables=[table for name, rows in worst for table in _word_tables(name, rows)],
         anything_cut=any(map(anything_cut, audit["vocabularies"])),
@@ -78,6 +80,7 @@ def environment() -> Environment:
         "meanings": MEANINGS,
         "fates": FATES,
         "headline": answers.headline,
+        "policy_answers": policy_answers,
         "key_of": _key_of,
         "how_to_read": answers.HOW_TO_READ,
         "languages_differ": answers.LANGUAGES_DIFFER,

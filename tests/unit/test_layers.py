@@ -16,7 +16,7 @@ LAYERS = [
     {"encoding"},
     {"figures"},
     {"planning"},
-    {"report"},
+    {"policy", "report"},
     {"runs"},
     {"api"},
     {"cli"},
