@@ -48,6 +48,7 @@ Example:
 @click.option(
     "--whole", is_flag=True, help="Encode every document whole: slower, the same figures."
 )
+@shared.bounds
 @click.option("--json", "as_json", is_flag=True, help="Print audit.json alone on standard output.")
 @click.option("--quiet", is_flag=True, help="Print nothing but errors.")
 def command(
@@ -56,23 +57,30 @@ def command(
     out: Path | None,
     overwrite: bool,
     no_excerpts: bool,
+    policy: Path | None,
+    undecided: str,
     as_json: bool,
     quiet: bool,
     **options: Any,  # noqa: ANN401 - the shared options, checked by `plan_of`
-) -> None:
+) -> int:
     """Measure CORPUS against one vocabulary or several, and write the whole audit.
 
     CORPUS: files, folders, globs, or - for standard input. Text, JSON lines, JSON, CSV, TSV,
     Parquet, Arrow; each also .gz .zst .bz2 .xz.
+
+    With --policy the exit code is 1 when a bound is not met.
     """
     from auditor.cli.printing import print_audit
+    from auditor.policy import read_policy
     from auditor.runs.auditing import assess
 
+    bounds = read_policy(policy) if policy else None
     plan = shared.plan_of(corpus, vocabularies, excerpts=not no_excerpts, **options)
     shown = progress.for_terminal(quiet=quiet)
     try:
-        written = assess(plan, out, overwrite=overwrite, progress=shown)
+        written = assess(plan, out, overwrite=overwrite, progress=shown, policy=bounds)
     finally:
         if shown:
             shown.close()
     print_audit(written, as_json=as_json, quiet=quiet)
+    return shared.policy_code(written.verdicts, undecided)

@@ -4,7 +4,7 @@ from __future__ import annotations
 
 import os
 import sys
-from typing import TYPE_CHECKING
+from typing import TYPE_CHECKING, Any
 
 import click
 
@@ -24,17 +24,41 @@ def print_audit(written: Written, *, as_json: bool, quiet: bool) -> None:
     """Print the audit: the machine form alone, nothing, or the summary for a person."""
     if as_json:
         click.echo(contract.dump(written.audit).decode(), nl=False)
-    elif not quiet:
+    if written.verdicts is not None and (as_json or quiet):
+        print_verdicts(written.verdicts, as_json=False, quiet=quiet, beside=True)
+    elif not (as_json or quiet):
         from auditor.report import terminal
 
         summary = terminal.summary(
             written.audit,
             files=written.files,
             worst=written.worst_words,
+            policy=written.verdicts,
             width=_width(),
             colour=_colour(),
         )
         click.echo(summary, nl=False)
+
+
+def print_verdicts(
+    verdicts: dict[str, Any], *, as_json: bool, quiet: bool, beside: bool = False
+) -> None:
+    """Print the verdicts of a policy: the machine form, or what a person reads.
+
+    ``beside`` sends them to standard error, as `audit.json` has standard output; ``quiet`` leaves
+    nothing but failed bounds, which go to standard error too.
+    """
+    from auditor.report import policy_terminal, terminal
+
+    if as_json:
+        click.echo(contract.dump(verdicts).decode(), nl=False)
+        return
+    if quiet and verdicts["outcome"] != "fail":
+        return
+    shown = policy_terminal.failures(verdicts) if quiet else policy_terminal.parts(verdicts)
+    beside = beside or quiet
+    told = terminal.rendered(shown, width=_width(), colour=_colour() and not beside)
+    click.echo(told, nl=False, err=beside)
 
 
 def print_plan(written: WrittenPlan, *, as_json: bool, quiet: bool) -> None:

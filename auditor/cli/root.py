@@ -13,6 +13,7 @@ from auditor.errors import AuditError
 # Name → module; the module holds a click command called `command`.
 _COMMANDS = {
     "assess": "auditor.cli.assess",
+    "check": "auditor.cli.check",
     "domain": "auditor.cli.domain",
     "inspect": "auditor.cli.inspect",
     "languages": "auditor.cli.languages",
@@ -94,4 +95,14 @@ def _run(arguments: list[str] | None) -> int:
 
 def _explained(fault: AuditError) -> str:
     lines = [f"Error: {fault.where}: {fault.message}" if fault.where else f"Error: {fault.message}"]
-    return "\n".join([*lines, f"  {fault.hint}"] if fault.hint else lines)
+    told = [*lines, f"  {fault.hint}"] if fault.hint else lines
+    return "\n".join("\n".join(map(_printable, text.split("\n"))) for text in told)
+
+
+def _printable(line: str) -> str:
+    """Return a line without what could move the cursor: messages quote files and their text."""
+    if line.isprintable():
+        return line
+    from auditor.report.tables import printable
+
+    return printable(line)

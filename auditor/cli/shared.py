@@ -60,6 +60,18 @@ _READING = (
     ),
 )  # fmt: skip
 
+_BOUNDS = (
+    click.option(
+        "--policy", type=click.Path(exists=True, dir_okay=False, path_type=Path), metavar="FILE",
+        help="Bounds that the figures must keep to (TOML).",
+    ),
+    click.option(
+        "--undecided", type=click.Choice(["pass", "fail"]), default="pass", show_default=True,
+        help="What a bound that cannot be decided counts as.",
+    ),
+)  # fmt: skip
+POLICY_NOT_MET = 1
+
 READING_NAMES = (
     "text", "by", "limit", "unit", "words", "control_strings", "pattern", "encoding", "strict",
     "workers", "batch_bytes",
@@ -69,6 +81,18 @@ READING_NAMES = (
 def reading(command: Command) -> Command:
     """Add the options of reading a corpus to ``command``."""
     return reduce(lambda made, option: option(made), reversed(_READING), command)
+
+
+def bounds(command: Command) -> Command:
+    """Add the options of a policy to ``command``."""
+    return reduce(lambda made, option: option(made), reversed(_BOUNDS), command)
+
+
+def policy_code(verdicts: dict[str, Any] | None, undecided: str) -> int:
+    """Return the exit code of a policy's verdicts: 1 when a bound is not met."""
+    outcome = "pass" if verdicts is None else verdicts["outcome"]
+    not_met = outcome == "fail" or (outcome == "undecided" and undecided == "fail")
+    return POLICY_NOT_MET if not_met else 0
 
 
 def plan_of(

@@ -38,7 +38,7 @@ def _unicode_of_regex() -> str | None:
 
 
 def schema(name: str = "audit") -> Json:
-    """Return the JSON Schema (draft 2020-12) of `audit.json`, `plan.json` or `languages.json`."""
+    """Return the JSON Schema (draft 2020-12) of the document ``name`` (`audit.json`: ``audit``)."""
     loaded: Json = orjson.loads((Path(__file__).parent / f"{name}.schema.json").read_bytes())
     return loaded
 

@@ -13,7 +13,7 @@ import orjson
 from jinja2 import Environment, PackageLoader, StrictUndefined
 from markupsafe import Markup, escape
 
-from auditor.report import answers, bins, charts, drawings, formatting
+from auditor.report import answers, bins, charts, drawings, formatting, policy_answers
 from auditor.report.answers import Excerpt, Sentence
 from auditor.report.details import FATES as LOSS_FATES
 from auditor.report.details import Details
@@ -39,11 +39,17 @@ _SLICE_COLUMNS = (
 _LIMIT_DRAWN = 4
 
 
-def render(audit: Json, worst: WorstWords, details: Sequence[Details] = ()) -> str:
+def render(
+    audit: Json,
+    worst: WorstWords,
+    details: Sequence[Details] = (),
+    policy: Json | None = None,
+) -> str:
     """Return the page for an `audit.json` document and the costliest words of each vocabulary.
 
     ``worst`` holds (vocabulary, [(word, count), …]) in the order of `tables.worst_words`; empty
-    when the audit was made without excerpts. ``details`` has one item a vocabulary. The same input
+    when the audit was made without excerpts. ``details`` has one item a vocabulary; ``policy`` is a
+    `policy.json` document. The same input
     gives the same text.
     """
     template = environment().get_template("report.html.jinja")
@@ -69,6 +75,7 @@ def render(audit: Json, worst: WorstWords, details: Sequence[Details] = ()) -> s
         loss_fates=LOSS_FATES,
         **script_of("page.js"),
         tried=Markup(_tried(audit["vocabularies"])),  # noqa: S704 - numbers only
+        policy=policy,
         slice_sets=[_set(number, audit, *found) for number, found in enumerate(sets(audit))],
         word_tables=[table for name, rows in worst for table in word_tables(name, rows)],
         anything_cut=any(map(anything_cut, audit["vocabularies"])),
@@ -107,6 +114,7 @@ def environment() -> Environment:
         "meanings": MEANINGS,
         "fates": FATES,
         "headline": answers.headline,
+        "policy_answers": policy_answers,
         "key_of": _key_of,
         "how_to_read": answers.HOW_TO_READ,
         "languages_differ": answers.LANGUAGES_DIFFER,

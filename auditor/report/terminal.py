@@ -13,7 +13,7 @@ from rich.padding import Padding
 from rich.table import Table
 from rich.text import Text
 
-from auditor.report import answers
+from auditor.report import answers, policy_terminal
 from auditor.report.answers import Sentence
 from auditor.report.formatting import clean, count, plural, ranged_or_why, size, value
 from auditor.report.questions import QUESTIONS
@@ -36,13 +36,15 @@ def summary(
     width: int = 80,
     colour: bool,
     worst: WorstWords = (),
+    policy: Json | None = None,
 ) -> str:
     """Return the audit as text for a terminal ``width`` cells wide, with colours if asked.
 
     ``files`` are the paths of what was written; ``worst`` the costliest words of each vocabulary,
-    of which a few are shown. Text of the corpus comes without control characters.
+    of which a few are shown; ``policy`` the document of `policy.json` where there is one. Text of
+    the corpus comes without control characters.
     """
-    return rendered(_parts(audit, files, worst), width=width, colour=colour)
+    return rendered(_parts(audit, files, worst, policy), width=width, colour=colour)
 
 
 def rendered(parts: Iterable[RenderableType], *, width: int, colour: bool) -> str:
@@ -58,7 +60,9 @@ def rendered(parts: Iterable[RenderableType], *, width: int, colour: bool) -> st
     return "".join(f"{line.rstrip(' ')}\n" for line in captured.get().split("\n")[:-1])
 
 
-def _parts(audit: Json, files: Sequence[Path], worst: WorstWords) -> Iterable[RenderableType]:
+def _parts(
+    audit: Json, files: Sequence[Path], worst: WorstWords, policy: Json | None
+) -> Iterable[RenderableType]:
     corpus, vocabularies = audit["corpus"], audit["vocabularies"]
     yield Text(
         f"{plural(corpus['documents'], 'document')}, {size(corpus['bytes'])}, "
@@ -68,6 +72,9 @@ def _parts(audit: Json, files: Sequence[Path], worst: WorstWords) -> Iterable[Re
     for vocabulary in vocabularies:
         yield Text(f"{clean(vocabulary['name'], 60)}: {answers.headline(vocabulary)}.", "bold")
     yield Text(answers.HOW_TO_READ, "dim")
+    if policy is not None:
+        yield Text()
+        yield from policy_terminal.parts(policy)
     grouped = sets(audit)
     for question in QUESTIONS:
         yield Text()

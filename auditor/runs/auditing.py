@@ -13,6 +13,8 @@ from typing import Any
 
 from auditor.corpus import find_sources, resolve_fields
 from auditor.encoding.documents import SeparationError, Tale
+from auditor.errors import SettingsError
+from auditor.policy import Policy, judge, refuse_unknown_fields, refuse_unknown_vocabularies
 from auditor.report import contract, page, tables
 from auditor.report.details import Details, details_of
 from auditor.runs.assembling import assemble
@@ -39,13 +41,17 @@ WorstWords = list[tuple[str, list[tuple[BrokenWord, int]]]]
 
 @dataclass(frozen=True)
 class Written:
-    """A finished audit: the document of `audit.json` and the files that were written."""
+    """A finished audit: the document of `audit.json` and the files that were written.
+
+    ``verdicts`` is the document of `policy.json`, ``None`` without a policy.
+    """
 
     audit: Json
     worst_words: WorstWords
     details: list[Details]
     folder: Path
     files: list[Path]
+    verdicts: Json | None = None
 
 
 def assess(
@@ -54,29 +60,36 @@ def assess(
     *,
     overwrite: bool = False,
     progress: Callable[[Progress], None] | None = None,
+    policy: Policy | None = None,
 ) -> Written:
     """Audit the corpus of ``plan`` against its vocabularies and write the audit to ``out``.
 
-    Raises AuditError for whatever the user can mend; then nothing is written.
+    With ``policy``, whether its bounds hold is written too. Raises AuditError for whatever the
+    user can mend; then nothing is written, but for the audit itself when all that is wrong is a
+    slice or vocabulary that the policy names and the corpus turns out not to hold.
     """
     began = time.monotonic()
+    if policy is not None:
+        refuse_unknown_fields(policy, plan.read.by)
     sources = find_sources(plan.corpus)
     fields = resolve_fields(sources, plan.read)
     plan, how = with_conversations(plan, fields)
     reading = Reading(sources, fields, how, progress)
     try:
-        return _audited(plan, reading, out, overwrite=overwrite, began=began)
+        return _audited(plan, reading, out, policy, overwrite=overwrite, began=began)
     except SeparationError as fault:
         if "-" in plan.corpus:  # it cannot be read again
             raise
         again = replace(plan, whole=True)
-        return _audited(again, reading, out, overwrite=overwrite, began=began, fault=str(fault))
+        told = str(fault)
+        return _audited(again, reading, out, policy, overwrite=overwrite, began=began, fault=told)
 
 
 def _audited(
     plan: Plan,
     reading: Reading,
     out: Path | None,
+    policy: Policy | None,
     *,
     overwrite: bool,
     began: float,
@@ -85,6 +98,8 @@ def _audited(
     workers = choose_workers(plan.workers, reading.total)
     with Processes(partial(Measurer, plan), workers) as processes:
         facts = named_apart(processes.facts)
+        if policy is not None:
+            refuse_unknown_vocabularies(policy, ((own.name, own.source) for own in facts))
         folder = out or Path("reports") / default_name(plan, [own.name for own in facts])
         with OutputFolder(folder, overwrite=overwrite) as output:
             rows = DocumentRows(output.begun, [own.name for own in facts], plan.read.by)
@@ -109,10 +124,32 @@ def _audited(
                 details_of(own.name, held.characters, held.usage.occurrences, reading.names)
                 for own, held in zip(facts, tallies.contents, strict=True)
             ]
-            _write(output, audit, worst, details, facts, tallies, reading.names)
+            verdicts, misnamed = _judged(policy, audit)
+            _write(output, audit, worst, details, facts, tallies, reading.names, verdicts)
             run = _run(plan, tale, fault, workers, reading.total, began)
             output.write("run.json", contract.dump(run))
-            return Written(audit, worst, details, folder, output.finish())
+            files = output.finish()
+    if misnamed is not None:
+        raise SettingsError(
+            misnamed.message,
+            hint=f"{misnamed.hint} The audit itself is written to {folder}: mend the policy, and"
+            " use it with `auditor check`.",
+            where=misnamed.where,
+        )
+    return Written(audit, worst, details, folder, files, verdicts)
+
+
+def _judged(policy: Policy | None, audit: Json) -> tuple[Json | None, SettingsError | None]:
+    """Return the verdicts, or what the policy names and the audit does not hold.
+
+    What took hours to measure is not thrown away for it.
+    """
+    if policy is None:
+        return None, None
+    try:
+        return judge(policy, audit), None
+    except SettingsError as fault:
+        return None, fault
 
 
 def worst_words(plan: Plan, facts: list[VocabularyFacts], tallies: AuditTallies) -> WorstWords:
@@ -131,6 +168,7 @@ def _write(
     facts: list[VocabularyFacts],
     tallies: AuditTallies,
     names: list[str],
+    verdicts: Json | None,
 ) -> None:
     pairs = zip(facts, tallies.contents, strict=True)
     characters = [(own.name, contents.characters) for own, contents in pairs]
@@ -139,7 +177,9 @@ def _write(
     output.write("lengths.csv", tables.as_csv(tables.lengths(audit)))
     output.write("words.csv", tables.as_csv(tables.words(worst)))
     output.write("characters.csv", tables.as_csv(tables.characters(characters, names)))
-    output.write("report.html", page.render(audit, worst, details))
+    output.write("report.html", page.render(audit, worst, details, verdicts))
+    if verdicts is not None:
+        output.write("policy.json", contract.dump(verdicts))
 
 
 def _run(

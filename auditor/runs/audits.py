@@ -43,6 +43,18 @@ class Audit:
         raise SettingsError(told, hint=f"Name one with --vocab: {there}.", where=str(self.path))
 
 
+def demanded_audit(argument: str) -> Audit:
+    """Return the audit that lies at ``argument``; CorpusError where none does."""
+    found = audit_at(argument)
+    if found is None:
+        raise CorpusError(
+            "there is no audit.",
+            hint="Name an audit.json, or the folder of one that `auditor assess` wrote.",
+            where=argument,
+        )
+    return found
+
+
 def audit_at(argument: str) -> Audit | None:
     """Return the audit that lies at ``argument``, a file or its folder; ``None`` where none does.
 

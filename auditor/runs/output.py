@@ -20,7 +20,7 @@ from auditor.runs.measuring import Outcome
 FILES = frozenset(
     {
         "audit.json", "run.json", "figures.csv", "lengths.csv", "words.csv", "characters.csv",
-        "documents.parquet", "set_aside.jsonl", "report.html",
+        "documents.parquet", "set_aside.jsonl", "report.html", "policy.json",
     }
 )  # fmt: skip
 PLAN_FILES = frozenset({"plan.json", "plan.csv", "report.html"})

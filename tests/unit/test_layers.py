@@ -17,7 +17,7 @@ LAYERS = [
     {"inspection"},
     {"figures"},
     {"planning"},
-    {"report"},
+    {"policy", "report"},
     {"runs"},
     {"api"},
     {"cli"},

@@ -11,6 +11,7 @@ from itertools import pairwise
 import pytest
 
 from auditor.figures.catalogue import CATALOGUE, RELATIVE_TOKENS
+from auditor.policy import judge, read_policy
 from auditor.report import answers
 from auditor.report.page import render
 from auditor.report.questions import QUESTIONS
@@ -216,3 +217,30 @@ def test_colours_contrast(scheme):
         assert contrast(ink, "paper") >= 4.5
         assert contrast(ink, "panel") >= 4.5
     assert contrast("mark", "paper") >= 3
+
+
+def test_a_policy_comes_first_and_is_safe(tmp_path):
+    """Its verdicts stand before the answers, linked to definitions, and nothing in them is run."""
+    (tmp_path / "limits.toml").write_text(
+        "[all]\nfertility = {min = 1}\np95 = {max = 600}\n"
+        '["lang=*"]\ncontinued_words = {max = 0.13, on = "interval"}\n'
+    )
+    audit = material.audit(material.HOSTILE, f"tide {material.UNSAFE}")
+    verdicts = {**judge(read_policy(tmp_path / "limits.toml"), audit), "policy": material.HOSTILE}
+    text = render(audit, [], policy=verdicts)
+    read = Read(text)
+    assert read.open == []
+    assert [tag for tag, _ in read.elements if tag in ("b", "link", "img")] == []
+    assert [tag for tag, _ in read.elements].count("script") == 2
+    assert re.findall(r"[\x00-\x09\x0b-\x1f\x7f-\x9f\u200b\u202e]", text) == []
+    places = read.attributes("id")
+    assert {target[1:] for target in read.attributes("href")} <= set(places)
+    assert len(places) == len(set(places))
+    assert read.texts["h2"][0] == "Does it keep to the policy?"
+    begun = (re.match("FAILS|undecided|holds", row.strip()) for row in read.texts["tr"])
+    assert [word[0] for word in begun if word] == [
+        *["FAILS"] * 2,
+        *["undecided"] * 12,
+        *["holds"] * 2,
+    ]
+    assert "further documents are like these" in text

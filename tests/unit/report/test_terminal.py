@@ -9,6 +9,7 @@ import pytest
 import regex
 from rich.cells import cell_len
 
+from auditor.policy import judge, read_policy
 from auditor.report import answers, contract
 from auditor.report.questions import QUESTIONS
 from auditor.report.terminal import summary
@@ -104,3 +105,18 @@ def test_words_without_excerpts_are_not_shown():
     text = told(worst=())
     assert "cal·ib·ration" not in text
     assert "personal data" not in text
+
+
+def test_a_policy_comes_first_and_fits(tmp_path):
+    """What fails stands at the top, within 80 cells, without control characters."""
+    (tmp_path / "limits.toml").write_text(
+        '[all]\nfertility = {min = 1}\n["lang=*"]\nfertility = {max = 1.6, on = "interval"}\n'
+    )
+    audit = material.audit(f"harbour{material.UNSAFE}", material.WIDE)
+    verdicts = judge(read_policy(tmp_path / "limits.toml"), audit)
+    text = summary(audit, files=FILES, colour=False, policy=verdicts)
+    assert max(map(cell_len, text.splitlines())) <= 80
+    assert regex.findall(r"[\p{C}--\n]|[\p{Zl}\p{Zp}]", text, flags=regex.V1) == []
+    assert text.index("FAILS: fertility in all") < text.index(QUESTIONS[0].title)
+    assert "undecided: fertility in lang=th under" in text
+    assert "no words in this slice" in " ".join(text.split())
