@@ -9,7 +9,7 @@ from auditor.figures import sidebyside
 from auditor.figures.intervals import Z
 from auditor.tallies.groups import ALL, Grouping
 from auditor.tallies.moments import MomentsTally
-from tests.unit.figures.test_published_statistics import CITIES
+from tests.unit.figures.test_published_statistics import CITIES, DISTRICTS
 
 DOCUMENTS = st.lists(
     st.tuples(
@@ -65,6 +65,19 @@ def test_a_published_ratio_of_paired_totals():
     error = (found.high - found.value) / Z
     assert found.value == pytest.approx(1.2390186, abs=1e-7)
     assert error * 4 * 5_054 * (1 - 49 / 196) ** 0.5 == pytest.approx(604.04, abs=0.05)
+
+
+def test_the_survey_package_s_paired_ratio():
+    """R `survey`: svyratio(~api.stu, ~enroll, dclus1) = 0.8497087, SE 0.008386297.
+
+    Two counts of each of 15 school districts, as two vocabularies' tokens of a document; the
+    package corrects for the 757 districts there are, by the root of 1 - 15/757.
+    """
+    rows = [(1, stu, enroll, 0, 0) for stu, enroll, *_ in DISTRICTS]
+    found = sidebyside.tokens_ratio(filled(rows), ALL, 0, 1)
+    assert found.value == pytest.approx(0.8497087, abs=5e-8)
+    error = (found.high - found.value) / Z * (1 - 15 / 757) ** 0.5
+    assert error == pytest.approx(0.008386297, abs=5e-10)
 
 
 def test_nothing_to_divide_by_is_undefined():
