@@ -22,13 +22,20 @@ from tempfile import TemporaryDirectory, mkdtemp
 from typing import Any, Literal
 
 from auditor.api import given
-from auditor.api.results import AuditResult, DomainResult, LanguagesResult, PlanResult
+from auditor.api.results import (
+    AuditResult,
+    DomainResult,
+    InspectionResult,
+    LanguagesResult,
+    PlanResult,
+)
 from auditor.corpus import Named, ReadOptions
 from auditor.corpus.options import Unit
 from auditor.planning.model import ModelShape, parse_model
 from auditor.planning.plan import Wishes
 from auditor.planning.ranking import USUAL, weights_of
-from auditor.runs import auditing, audits, lengths
+from auditor.policy import read_policy
+from auditor.runs import auditing, audits, inspecting, lengths
 from auditor.runs import domain as vetting
 from auditor.runs import languages as tongues
 from auditor.runs.audits import Audit
@@ -72,6 +79,7 @@ def assess(
     repeats: bool = False,
     excerpts: bool = True,
     whole: bool = False,
+    policy: str | Path | None = None,
     reading: Reading | None = None,
     out: str | Path | None = None,
     overwrite: bool = False,
@@ -80,16 +88,18 @@ def assess(
     """Measure ``source`` against one vocabulary or several: `auditor assess`.
 
     ``by`` names fields whose values are measured apart; ``limit`` is in positions, template
-    included (``None``: as the files declare). ``progress`` is called after every batch.
+    included (``None``: as the files declare); ``policy`` is a file of bounds, whose verdicts the
+    result holds. ``progress`` is called after every batch.
     """
+    bounds = None if policy is None else read_policy(Path(policy))
     reading = _reading(reading, limit=limit, text=text)
     with _spooled(source) as corpus, _folder(out) as (folder, held):
         plan = replace(
             _plan(corpus, vocab, by, reading, origin=origin),
             graphemes=graphemes, repeats=repeats, excerpts=excerpts, whole=whole,
         )  # fmt: skip
-        done = auditing.assess(plan, folder, overwrite=overwrite, progress=progress)
-        return AuditResult(done.audit, done.folder, held)
+        done = auditing.assess(plan, folder, overwrite=overwrite, progress=progress, policy=bounds)
+        return AuditResult(done.audit, done.folder, held, done.verdicts)
 
 
 def plan_length(
@@ -207,6 +217,27 @@ def domain(
         )
         done = vetting.vet_domain(plan, wishes, folder, overwrite=overwrite, progress=progress)
         return DomainResult(done.document, done.folder, held)
+
+
+def inspect(
+    vocab: Vocabularies,
+    *,
+    width: int | None = None,
+    model: str | None = None,
+    control_strings: Literal["parse", "text"] = "parse",
+    pattern: str | None = None,
+    out: str | Path | None = None,
+    overwrite: bool = False,
+) -> InspectionResult:
+    """Look into one vocabulary or several, without a corpus: `auditor inspect`."""
+    paths = (vocab,) if isinstance(vocab, (str, Path)) else tuple(vocab)
+    specs = [VocabularySpec(str(path), control_strings, pattern) for path in paths]
+    with _folder(out) as (folder, held):
+        done = inspecting.inspect(
+            specs, folder, width=width, shape=parse_model(model) if model else None,
+            overwrite=overwrite,
+        )  # fmt: skip
+        return InspectionResult(done.document, done.folder, held)
 
 
 def _reading(reading: Reading | None, *, limit: int | None, text: Names) -> Reading:

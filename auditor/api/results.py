@@ -25,8 +25,8 @@ _SHOWN = ("fertility", "continued_words", "bytes_per_token", "unknown_words",
 # Columns of CSV files that hold text; whatever they hold, it is no missing value.
 _TEXT = dict.fromkeys(
     (
-        "vocabulary", "word", "broken", "character", "code_point", "name", "script", "fate",
-        "first_source",
+        "vocabulary", "word", "broken", "entry", "text", "becomes", "character", "code_point",
+        "name", "script", "fate", "first_source",
     ),
     str,
 )  # fmt: skip
@@ -75,7 +75,16 @@ class Result:
 
 
 class AuditResult(Result):
-    """An audit; may be handed to `plan_length` and, as general text, to `domain`."""
+    """An audit; may be handed to `plan_length` and, as general text, to `domain`.
+
+    ``verdicts`` is the document of `policy.json`, ``None`` without a policy.
+    """
+
+    def __init__(
+        self, document: Json, folder: Path, held: Path | None, verdicts: Json | None = None
+    ) -> None:
+        super().__init__(document, folder, held)
+        self.verdicts = verdicts
 
     @cached_property
     def figures(self) -> pd.DataFrame:
@@ -161,6 +170,33 @@ class LanguagesResult(Result):
     def _shown(self) -> pd.DataFrame:
         figures = self.languages
         return figures[figures["figure"].isin(["fertility", "ratio_of_totals"])]
+
+
+class InspectionResult(Result):
+    """Vocabularies looked into."""
+
+    @cached_property
+    def entries(self) -> pd.DataFrame:
+        """One row a vocabulary and entry, as in `entries.csv`."""
+        return _read(self.folder / "entries.csv")
+
+    @cached_property
+    def unreachable(self) -> pd.DataFrame:
+        """The entries that are never produced, as in `unreachable.csv`."""
+        return _read(self.folder / "unreachable.csv")
+
+    def _sentences(self) -> Iterable[str]:
+        for own in self.document["vocabularies"]:
+            yield f"{own['name']}: {answers.headline(own)}."
+            yield from own["answers"]
+
+    def _shown(self) -> pd.DataFrame:
+        rows = (
+            (own["name"], kind, number)
+            for own in self.document["vocabularies"]
+            for kind, number in own["kinds"].items()
+        )
+        return tables.frame(("vocabulary", "kind", "entries"), rows)
 
 
 class DomainResult(Result):

@@ -141,6 +141,25 @@ def test_plans_of_a_corpus_and_languages():
     assert not found.scripts.empty
 
 
+def test_a_policy_gives_verdicts(tmp_path):
+    """The document of `policy.json` beside the audit; without a policy there is none."""
+    path = tmp_path / "bounds.toml"
+    path.write_text("[all]\nfertility = {max = 0.1}\n")
+    found = auditor.assess(NOTICES, VOCABULARY, policy=path)
+    assert [own["verdict"] for own in found.verdicts["verdicts"]] == ["fail"]
+    assert auditor.assess(NOTICES, VOCABULARY).verdicts is None
+
+
+def test_a_vocabulary_is_looked_into_without_a_corpus():
+    """Every entry in the frame; the same document as the command's."""
+    found = auditor.inspect([VOCABULARY, BYTELEVEL], width=8)
+    first, second = (own["entries"] for own in found.document["vocabularies"])
+    assert len(found.entries) == first + second
+    assert found.entries["entry"].notna().all()
+    assert len(found.unreachable) == 0
+    assert "<table" in found._repr_html_()
+
+
 def test_progress_is_told_after_every_batch():
     """Documents read so far, up to all."""
     told = []
