@@ -23,11 +23,12 @@ from auditor.planning.model import parse_model
 from auditor.planning.plan import Wishes
 from auditor.report import domain_page, inspection_page, language_page, page, plan_page
 from auditor.runs.auditing import assess
-from auditor.runs.domain import DomainWishes, vet_domain
+from auditor.runs.domain import vet_domain
 from auditor.runs.inspecting import inspect
 from auditor.runs.languages import compare_languages
 from auditor.runs.lengths import plan_from_corpus
 from auditor.runs.plan import Plan
+from auditor.runs.vetted import DomainWishes
 from auditor.vocabulary import VocabularySpec
 
 ROOT = Path(__file__).resolve().parent.parent

@@ -41,6 +41,7 @@ from auditor.runs import languages as tongues
 from auditor.runs.audits import Audit
 from auditor.runs.plan import Plan
 from auditor.runs.reading import Progress
+from auditor.runs.vetted import DomainWishes
 from auditor.vocabulary import VocabularySpec
 
 Vocabularies = str | Path | Iterable[str | Path]
@@ -206,7 +207,7 @@ def domain(
     reading = _reading(reading, limit=limit, text=text)
     with _spooled(source) as corpus, _general(general) as beside, _folder(out) as (folder, held):
         plan = replace(_plan(corpus, vocab, by, reading), excerpts=excerpts)
-        wishes = vetting.DomainWishes(
+        wishes = DomainWishes(
             general=beside,
             general_text=None if general_text is None else _names(general_text),
             weights=dict(USUAL) if weigh is None else weights_of(weigh),

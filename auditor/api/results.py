@@ -4,6 +4,7 @@ from __future__ import annotations
 
 import shutil
 import weakref
+from abc import ABC, abstractmethod
 from collections.abc import Iterable
 from functools import cached_property
 from pathlib import Path
@@ -32,7 +33,7 @@ _TEXT = dict.fromkeys(
 )  # fmt: skip
 
 
-class Result:
+class Result(ABC):
     """A finished run: ``document`` is what its JSON file holds, ``folder`` where its files lie.
 
     The folder is temporary, and lives as long as the result, unless the run was given another;
@@ -67,11 +68,13 @@ class Result:
         told = "".join(f"<li>{escape(sentence)}</li>" for sentence in self._sentences())
         return f"<ul>{told}</ul>{self._shown().to_html(index=False, na_rep='–')}"
 
+    @abstractmethod
     def _sentences(self) -> Iterable[str]:
-        raise NotImplementedError
+        """Return what there is to say, most important first."""
 
+    @abstractmethod
     def _shown(self) -> pd.DataFrame:
-        raise NotImplementedError
+        """Return the main figures."""
 
 
 class AuditResult(Result):

@@ -93,7 +93,8 @@ def command(
     from auditor.cli.printing import print_domain
     from auditor.planning.model import parse_model
     from auditor.planning.ranking import USUAL, parse_weights
-    from auditor.runs.domain import DomainWishes, vet_domain
+    from auditor.runs.domain import vet_domain
+    from auditor.runs.vetted import DomainWishes
 
     if options["width"] and options["model"]:
         raise click.UsageError("--width and --model both name a width: give one of them.")

@@ -18,8 +18,9 @@ from auditor.report import contract
 from auditor.report.domain_answers import shared
 from auditor.report.formatting import FIGURES, figure, proportion, ranged
 from auditor.runs.auditing import assess
-from auditor.runs.domain import DomainWishes, vet_domain
+from auditor.runs.domain import vet_domain
 from auditor.runs.plan import Plan
+from auditor.runs.vetted import DomainWishes
 from auditor.text.halves import halves_of
 from auditor.vocabulary import VocabularySpec
 from tests.unit.runs.conftest import DEMO, VOCABULARIES, plan
