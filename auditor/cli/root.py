@@ -14,6 +14,7 @@ from auditor.errors import AuditError
 _COMMANDS = {
     "assess": "auditor.cli.assess",
     "check": "auditor.cli.check",
+    "compare": "auditor.cli.compare",
     "languages": "auditor.cli.languages",
     "plan-length": "auditor.cli.plan_length",
 }

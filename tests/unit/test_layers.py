@@ -15,7 +15,7 @@ LAYERS = [
     {"corpus", "vocabulary", "tallies"},
     {"encoding"},
     {"figures"},
-    {"planning"},
+    {"comparing", "planning"},
     {"policy", "report"},
     {"runs"},
     {"api"},
