@@ -12,6 +12,7 @@ from auditor.report import contract
 
 if TYPE_CHECKING:
     from auditor.runs.auditing import Written
+    from auditor.runs.differences import WrittenComparison
     from auditor.runs.domain import WrittenDomain
     from auditor.runs.inspecting import WrittenInspection
     from auditor.runs.languages import WrittenLanguages
@@ -108,6 +109,19 @@ def print_inspection(written: WrittenInspection, *, as_json: bool, quiet: bool) 
         from auditor.report import inspection_terminal
 
         summary = inspection_terminal.summary(
+            written.document, files=written.files, width=_width(), colour=_colour()
+        )
+        click.echo(summary, nl=False)
+
+
+def print_comparison(written: WrittenComparison, *, as_json: bool, quiet: bool) -> None:
+    """Print the comparison: the machine form alone, nothing, or the summary for a person."""
+    if as_json:
+        click.echo(contract.dump(written.document).decode(), nl=False)
+    elif not quiet:
+        from auditor.report import comparison_terminal
+
+        summary = comparison_terminal.summary(
             written.document, files=written.files, width=_width(), colour=_colour()
         )
         click.echo(summary, nl=False)

@@ -14,6 +14,7 @@ from auditor.errors import AuditError
 _COMMANDS = {
     "assess": "auditor.cli.assess",
     "check": "auditor.cli.check",
+    "compare": "auditor.cli.compare",
     "domain": "auditor.cli.domain",
     "inspect": "auditor.cli.inspect",
     "languages": "auditor.cli.languages",

@@ -38,13 +38,16 @@ def ratio_interval(
     return (max(0.0, low), min(1.0, high)) if share else (low, high)
 
 
-def wilson(successes: int, n: int) -> Interval:
-    """Return Wilson's score interval of a proportion (Wilson 1927; Newcombe 1998, method 3)."""
+def wilson(successes: int, n: int, z: float = Z) -> Interval:
+    """Return Wilson's score interval of a proportion (Wilson 1927; Newcombe 1998, method 3).
+
+    ``z`` is the normal quantile of the confidence, that of 95 % unless given.
+    """
     if n == 0:
         return None, None
-    p, z2 = successes / n, Z * Z
+    p, z2 = successes / n, z * z
     centre = (p + z2 / (2 * n)) / (1 + z2 / n)
-    half = Z * math.sqrt(p * (1 - p) / n + z2 / (4 * n * n)) / (1 + z2 / n)
+    half = z * math.sqrt(p * (1 - p) / n + z2 / (4 * n * n)) / (1 + z2 / n)
     low = 0.0 if successes == 0 else max(0.0, centre - half)
     return low, 1.0 if successes == n else min(1.0, centre + half)
 

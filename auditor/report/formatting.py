@@ -57,6 +57,43 @@ def ranged_or_why(name: str, figure: Json) -> str:
     return ranged(name, figure)
 
 
+def difference(name: str, found: Json) -> str:
+    """Return a difference with its sign, shares in percentage points; a dash when undefined.
+
+    ``name`` is a figure's, or ``length`` for quantiles, which are shown as whole numbers.
+    """
+    if found["difference"] is None:
+        return DASH
+    return _signed(name, found["difference"], _spread(found))
+
+
+def difference_interval(name: str, found: Json) -> str | None:
+    """Return the two ends of a difference's interval; ``None`` where one is missing."""
+    if found["low"] is None or found["high"] is None:
+        return None
+    return " to ".join(_signed(name, found[end], _spread(found)) for end in ("low", "high"))
+
+
+def _spread(found: Json) -> float:
+    middle: float = found["difference"]
+    if found["low"] is None or found["high"] is None:
+        return abs(middle)
+    half: float = max(found["high"] - middle, middle - found["low"])
+    return half or abs(middle)
+
+
+def _signed(name: str, number: float, spread: float) -> str:
+    """Return a number with its sign and two digits of ``spread``."""
+    if isinstance(number, int) or name == "length":
+        whole = round(number)
+        return f"{whole:+,}".replace("-", "−") if whole else "0"
+    scale = 100 if name in SHARES else 1
+    wanted = 1 - math.floor(math.log10(spread * scale)) if spread else 0
+    decimals = max(1 if name in SHARES else 2, min(_MOST, wanted))
+    shown = f"{number * scale:+,.{decimals}f}".replace("-", "−")
+    return shown if any(digit in shown for digit in "123456789") else shown.lstrip("+−")
+
+
 def quantile(found: Json) -> str:
     """Return an observed length and its interval; an open end is a dash."""
     if found["low"] is None and found["high"] is None:

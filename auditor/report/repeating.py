@@ -126,6 +126,43 @@ def _shape(model: Json) -> str:
     return ",".join(f"{name}={_spelled(value)}" for name, value in shape.items())
 
 
+def comparison_command(document: Json) -> str:
+    """Return the command line that makes this comparison of audits, quoted for a POSIX shell."""
+    settings = document["settings"]
+    words = ["auditor", "compare", document["before"]["audit"], document["after"]["audit"]]
+    for option, name in (("--vocab", "vocabulary"), ("--vocab-after", "vocabulary_after")):
+        if settings[name] is not None:
+            words += [option, settings[name]]
+    if settings["different_settings"]:
+        words.append("--allow-different-settings")
+    if not settings["excerpts"]:
+        words.append("--no-excerpts")
+    return shlex.join(words)
+
+
+def comparison_blocks(document: Json) -> list[Block]:
+    """Return titled lists of (name, text): each audit with its corpus, and the vocabularies."""
+    found: list[Block] = []
+    for side, title in (("before", "Before"), ("after", "After")):
+        own = document[side]
+        corpus = own["corpus"]
+        more = len(corpus["sources"]) - _SOURCES
+        sources = ", ".join(corpus["sources"][:_SOURCES])
+        facts = [
+            ("audit", own["audit"]),
+            ("sources", f"{sources} and {count(more)} more" if more > 0 else sources),
+            ("digest", corpus["digest"]),
+            ("records set aside", count(own["set_aside"])),
+            *((name, _text(version)) for name, version in own["made_with"].items()),
+        ]
+        vocabularies = [
+            ("vocabulary", f"{pair[side]['name']}, {pair[side]['source']}, {pair[side]['digest']}")
+            for pair in document["pairs"]
+        ]
+        found.append((title, [*facts, *vocabularies]))
+    return found
+
+
 def plan_facts(plan: Json) -> list[tuple[str, str]]:
     """Return what the plan was made of, as (name, text): corpus, vocabulary, versions."""
     vocabulary, corpus = plan["vocabulary"], plan["corpus"]

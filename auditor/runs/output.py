@@ -24,6 +24,7 @@ FILES = frozenset(
     }
 )  # fmt: skip
 PLAN_FILES = frozenset({"plan.json", "plan.csv", "report.html"})
+COMPARISON_FILES = frozenset({"comparison.json", "differences.csv", "report.html"})
 LANGUAGE_FILES = frozenset(
     {"languages.json", "languages.csv", "scripts.csv", "doubtful_labels.jsonl", "report.html"}
 )

@@ -16,7 +16,7 @@ LAYERS = [
     {"encoding"},
     {"inspection"},
     {"figures"},
-    {"planning"},
+    {"comparing", "planning"},
     {"policy", "report"},
     {"runs"},
     {"api"},

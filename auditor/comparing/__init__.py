@@ -1,0 +1,1 @@
+"""Two audits side by side: what differs, by how much and how surely; knows only their JSON."""
