@@ -21,8 +21,9 @@ import orjson
 from auditor.corpus import ReadOptions
 from auditor.planning.model import parse_model
 from auditor.planning.plan import Wishes
-from auditor.report import language_page, page, plan_page
+from auditor.report import comparison_page, language_page, page, plan_page
 from auditor.runs.auditing import assess
+from auditor.runs.differences import Wanted, compare_audits
 from auditor.runs.languages import compare_languages
 from auditor.runs.lengths import plan_from_corpus
 from auditor.runs.plan import Plan
@@ -52,8 +53,13 @@ PLANS = {
 
 LENGTH_PLAN = "inspection-notes--length-plan"
 LANGUAGES = "safety-notices--languages"
+COMPARISON = "damaged-notes--to--inspection-notes"
 # The document that each kind of page is rendered from.
-HELD = {LENGTH_PLAN: "plan.json", LANGUAGES: "languages.json"}
+HELD = {
+    LENGTH_PLAN: "plan.json",
+    LANGUAGES: "languages.json",
+    COMPARISON: "comparison.json",
+}
 MODEL = "layers=4,width=256,heads=4,inner=1024"
 
 Render = Callable[[dict[str, Any]], str]
@@ -77,6 +83,11 @@ def build(folder: Path) -> dict[str, Render]:
     compared = replace(notices, read=reading, graphemes=True)
     compare_languages(compared, ("en",), folder / LANGUAGES, overwrite=True)
     pages[LANGUAGES] = language_page.render
+    # The stored audits are compared, by the names that a user would type: paths stand in the JSON.
+    stored = (f"reports/samples/{name}" for name in COMPARISON.split("--to--"))
+    wanted = Wanted(before="harbour-wordpiece", after="harbour-wordpiece")
+    compare_audits(*stored, wanted, folder / COMPARISON, overwrite=True)
+    pages[COMPARISON] = comparison_page.render
     return pages
 
 

@@ -45,14 +45,17 @@ def render(document: Json) -> str:
 @cache
 def _environment() -> Environment:
     made = environment().overlay()
-    made.filters |= {
+    # An overlay shares both with every other page: names of this one must not reach them.
+    made.filters = {
+        **made.filters,
         "difference": lambda own, name: formatting.difference(name, own),
         "difference_interval": lambda own, name: formatting.difference_interval(name, own) or "",
         "p": p_value,
         "rate": lambda number: f"{number:,.1f}",
         "change": lambda number: f"{number:+,.1f}".replace("-", "−"),
     }
-    made.globals |= {
+    made.globals = {
+        **made.globals,
         "told": comparison_answers,
         "how_to_read_differences": comparison_answers.HOW_TO_READ,
         "excerpts": answers.EXCERPTS,
