@@ -11,7 +11,7 @@ import importlib
 from typing import TYPE_CHECKING, Any
 
 if TYPE_CHECKING:
-    from auditor.api.calls import Reading, assess, domain, inspect, languages, plan_length
+    from auditor.api.calls import Reading, assess, compare, domain, inspect, languages, plan_length
     from auditor.errors import AuditError
 
 # Name → the module that holds it: imported when it is asked for, so that the command line's help
@@ -20,13 +20,23 @@ _HOMES = {
     "AuditError": "auditor.errors",
     "Reading": "auditor.api.calls",
     "assess": "auditor.api.calls",
+    "compare": "auditor.api.calls",
     "domain": "auditor.api.calls",
     "inspect": "auditor.api.calls",
     "languages": "auditor.api.calls",
     "plan_length": "auditor.api.calls",
 }
 
-__all__ = ["AuditError", "Reading", "assess", "domain", "inspect", "languages", "plan_length"]
+__all__ = [
+    "AuditError",
+    "Reading",
+    "assess",
+    "compare",
+    "domain",
+    "inspect",
+    "languages",
+    "plan_length",
+]
 
 
 def __getattr__(name: str) -> Any:  # noqa: ANN401 - functions and classes alike

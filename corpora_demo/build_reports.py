@@ -21,8 +21,16 @@ import orjson
 from auditor.corpus import ReadOptions
 from auditor.planning.model import parse_model
 from auditor.planning.plan import Wishes
-from auditor.report import domain_page, inspection_page, language_page, page, plan_page
+from auditor.report import (
+    comparison_page,
+    domain_page,
+    inspection_page,
+    language_page,
+    page,
+    plan_page,
+)
 from auditor.runs.auditing import assess
+from auditor.runs.differences import Wanted, compare_audits
 from auditor.runs.domain import vet_domain
 from auditor.runs.inspecting import inspect
 from auditor.runs.languages import compare_languages
@@ -58,12 +66,14 @@ LANGUAGES = "safety-notices--languages"
 INSPECTION = "harbour-wordpiece--inspection"
 INSPECTED = ("harbour-wordpiece", "harbour-bytelevel")
 DOMAIN = "inspection-notes--domain"
+COMPARISON = "damaged-notes--to--inspection-notes"
 # The document that each kind of page is rendered from.
 HELD = {
     LENGTH_PLAN: "plan.json",
     LANGUAGES: "languages.json",
     DOMAIN: "domain.json",
     INSPECTION: "inspection.json",
+    COMPARISON: "comparison.json",
 }
 MODEL = "layers=4,width=256,heads=4,inner=1024"
 
@@ -102,6 +112,11 @@ def build(folder: Path) -> dict[str, Render]:
     specs = [VocabularySpec(f"{VOCABULARIES}/{name}") for name in INSPECTED]
     inspect(specs, folder / INSPECTION, width=256, overwrite=True)
     pages[INSPECTION] = inspection_page.render
+    # The stored audits are compared, by the names that a user would type: paths stand in the JSON.
+    stored = (f"reports/samples/{name}" for name in COMPARISON.split("--to--"))
+    wanted = Wanted(before="harbour-wordpiece", after="harbour-wordpiece")
+    compare_audits(*stored, wanted, folder / COMPARISON, overwrite=True)
+    pages[COMPARISON] = comparison_page.render
     return pages
 
 

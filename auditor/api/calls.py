@@ -24,6 +24,7 @@ from typing import Any, Literal
 from auditor.api import given
 from auditor.api.results import (
     AuditResult,
+    ComparisonResult,
     DomainResult,
     InspectionResult,
     LanguagesResult,
@@ -35,7 +36,7 @@ from auditor.planning.model import ModelShape, parse_model
 from auditor.planning.plan import Wishes
 from auditor.planning.ranking import USUAL, weights_of
 from auditor.policy import read_policy
-from auditor.runs import auditing, audits, inspecting, lengths
+from auditor.runs import auditing, audits, differences, inspecting, lengths
 from auditor.runs import domain as vetting
 from auditor.runs import languages as tongues
 from auditor.runs.audits import Audit
@@ -239,6 +240,31 @@ def inspect(
             overwrite=overwrite,
         )  # fmt: skip
         return InspectionResult(done.document, done.folder, held)
+
+
+def compare(
+    before: AuditResult | str | Path,
+    after: AuditResult | str | Path,
+    *,
+    vocab: str | None = None,
+    vocab_after: str | None = None,
+    different_settings: bool = False,
+    excerpts: bool = True,
+    out: str | Path | None = None,
+    overwrite: bool = False,
+) -> ComparisonResult:
+    """Compare two audits, each a result or the path of one: `auditor compare`.
+
+    ``vocab`` names the vocabulary of both, or that of ``before``; ``different_settings`` goes on
+    where the audits were made with others.
+    """
+    wanted = differences.Wanted(vocab, vocab_after or vocab, different_settings, excerpts)
+    first, second = (
+        str(own.folder if isinstance(own, AuditResult) else own) for own in (before, after)
+    )
+    with _folder(out) as (folder, held):
+        done = differences.compare_audits(first, second, wanted, folder, overwrite=overwrite)
+        return ComparisonResult(done.document, done.folder, held)
 
 
 def _reading(reading: Reading | None, *, limit: int | None, text: Names) -> Reading:

@@ -14,7 +14,16 @@ import pandas as pd
 from markupsafe import escape
 
 from auditor.errors import OutputError
-from auditor.report import answers, contract, domain_tables, language_tables, plan_tables, tables
+from auditor.report import (
+    answers,
+    comparison_answers,
+    comparison_tables,
+    contract,
+    domain_tables,
+    language_tables,
+    plan_tables,
+    tables,
+)
 from auditor.report.questions import QUESTIONS
 from auditor.runs.audits import Audit
 
@@ -200,6 +209,23 @@ class InspectionResult(Result):
             for kind, number in own["kinds"].items()
         )
         return tables.frame(("vocabulary", "kind", "entries"), rows)
+
+
+class ComparisonResult(Result):
+    """Two audits compared."""
+
+    @cached_property
+    def differences(self) -> pd.DataFrame:
+        """One row a figure of a slice, as in `differences.csv`."""
+        return comparison_tables.differences(self.document).infer_objects()
+
+    def _sentences(self) -> Iterable[str]:
+        yield from ("".join(sentence) for sentence in comparison_answers.counted(self.document))
+        yield from comparison_answers.notes(self.document)
+
+    def _shown(self) -> pd.DataFrame:
+        found = self.differences
+        return found[(found["slice"] == "all") & found["figure"].isin(_SHOWN)]
 
 
 class DomainResult(Result):

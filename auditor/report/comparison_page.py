@@ -13,7 +13,7 @@ from auditor.report import answers, comparison_answers, comparison_charts, forma
 from auditor.report.comparison_answers import NOT_SHOWN, of_pair
 from auditor.report.comparison_charts import Point
 from auditor.report.formatting import SHARES, clean
-from auditor.report.page import environment
+from auditor.report.page import own_environment
 from auditor.report.slices import RANKED_BY
 from auditor.tallies.groups import ALL
 
@@ -44,7 +44,7 @@ def render(document: Json) -> str:
 
 @cache
 def _environment() -> Environment:
-    made = environment().overlay()
+    made = own_environment()
     made.filters |= {
         "difference": lambda own, name: formatting.difference(name, own),
         "difference_interval": lambda own, name: formatting.difference_interval(name, own) or "",

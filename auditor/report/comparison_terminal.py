@@ -43,6 +43,7 @@ def _parts(document: Json, files: Sequence[Path]) -> Iterable[RenderableType]:
         yield from _pair(document, pair)
     yield Text()
     yield Text(comparison_answers.MANY, "italic")
+    yield Text(comparison_answers.METHOD, "italic")
     if any(_shown(pair) for pair in document["pairs"]):
         yield Text(answers.EXCERPTS, "italic")
     yield from written(files)

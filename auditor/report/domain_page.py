@@ -11,7 +11,7 @@ from markupsafe import Markup
 
 from auditor.report import domain_answers, repeating, row_charts
 from auditor.report.formatting import FIGURES, clean, figure, number, plain_name, proportion, value
-from auditor.report.page import WorstWords, environment, script_of, word_tables
+from auditor.report.page import WorstWords, own_environment, script_of, word_tables
 
 Json = Mapping[str, Any]
 
@@ -73,7 +73,7 @@ def render(document: Json, worst: WorstWords) -> str:
 
 @cache
 def _environment() -> Environment:
-    made = environment().overlay()
+    made = own_environment()
     made.filters |= {
         "proportion": proportion,
         "figure": figure,

@@ -10,7 +10,7 @@ from jinja2 import Environment
 
 from auditor.report import inspection_answers, repeating, row_charts
 from auditor.report.formatting import clean, proportion
-from auditor.report.page import environment, script_of
+from auditor.report.page import own_environment, script_of
 
 Json = Mapping[str, Any]
 
@@ -38,7 +38,7 @@ def render(document: Json) -> str:
 
 @cache
 def _environment() -> Environment:
-    made = environment().overlay()
+    made = own_environment()
     made.filters |= {"proportion": proportion}
     return made
 

@@ -11,7 +11,7 @@ from markupsafe import Markup
 
 from auditor.report import answers, language_answers, language_charts, repeating, row_charts
 from auditor.report.formatting import figure, number, proportion
-from auditor.report.page import environment, script_of
+from auditor.report.page import own_environment, script_of
 from auditor.report.tables import character_name
 
 Json = Mapping[str, Any]
@@ -44,7 +44,7 @@ def render(document: Json) -> str:
 
 @cache
 def _environment() -> Environment:
-    made = environment().overlay()
+    made = own_environment()
     made.filters |= {
         "proportion": proportion,
         "figure": figure,

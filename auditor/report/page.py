@@ -124,6 +124,13 @@ def environment() -> Environment:
     return environment
 
 
+def own_environment() -> Environment:
+    """Return the same for one page, whose filters and names do not reach the others."""
+    made = environment().overlay()
+    made.filters, made.globals = dict(made.filters), dict(made.globals)
+    return made
+
+
 def marked(sentence: Sentence) -> Markup:
     """Return a sentence as markup, text of the corpus apart from the direction of the rest."""
     parts = (

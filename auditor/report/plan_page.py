@@ -15,7 +15,7 @@ from markupsafe import Markup
 
 from auditor.report import answers, bins, charts, plan_answers, repeating
 from auditor.report.formatting import proportion, times
-from auditor.report.page import environment
+from auditor.report.page import own_environment
 from auditor.report.plan_answers import candidate
 
 Json = Mapping[str, Any]
@@ -72,7 +72,7 @@ def render(plan: Json) -> str:
 
 @cache
 def _environment() -> Environment:
-    made = environment().overlay()
+    made = own_environment()
     made.filters |= {"proportion": proportion, "times": times, "flops": flops}
     made.globals |= {
         "cut_names": CUT_NAMES,

@@ -160,6 +160,17 @@ def test_a_vocabulary_is_looked_into_without_a_corpus():
     assert "<table" in found._repr_html_()
 
 
+def test_two_audits_are_compared(tmp_path):
+    """Results and paths alike; the frame holds what the file holds."""
+    before = auditor.assess(NOTICES, VOCABULARY)
+    after = auditor.assess(DEMO / "inspection_notes.jsonl", VOCABULARY, out=tmp_path / "a")
+    found = auditor.compare(before, after)
+    again = auditor.compare(before, tmp_path / "a" / "audit.json", vocab="harbour-wordpiece")
+    assert found.document["differences"] == again.document["differences"]
+    assert set(found.differences["figure"]) >= {"fertility"}
+    assert "<table" in found._repr_html_()
+
+
 def test_progress_is_told_after_every_batch():
     """Documents read so far, up to all."""
     told = []
