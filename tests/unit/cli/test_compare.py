@@ -173,6 +173,7 @@ def test_a_damaged_table_is_told(audits, content, told):
 
 def test_words_that_look_like_absent_values_and_long_ones_are_words(audits):
     """`NA`, `null` and a word of 200,000 letters, written by an audit and read back."""
+    usual = csv.field_size_limit()
     texts = ["NA null nan", "x" * 200_000]
     records = b"".join(orjson.dumps({"text": text}) + b"\n" for text in texts)
     Path("odd.jsonl").write_bytes(records)
@@ -185,7 +186,7 @@ def test_words_that_look_like_absent_values_and_long_ones_are_words(audits):
         lines = stream.read().splitlines()[1:]
     assert len(found) == words["counts"]["appeared"]
     assert {line.split(",")[1] for line in lines} == found
-    assert csv.field_size_limit() == 131072
+    assert csv.field_size_limit() == usual
 
 
 def test_hostile_text_in_both_corpora(run):
