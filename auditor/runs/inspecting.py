@@ -17,7 +17,7 @@ from auditor.planning.model import ModelShape
 from auditor.report import contract, inspection_answers, inspection_page, inspection_tables, tables
 from auditor.runs.assembling import facts_as_json
 from auditor.runs.output import INSPECTION_FILES, OutputFolder
-from auditor.runs.reading import named_apart
+from auditor.runs.reading import cleaned, named_apart
 from auditor.vocabulary import Vocabulary, VocabularySpec, facts_of, open_vocabulary
 from auditor.vocabulary.facts import VocabularyFacts
 
@@ -50,7 +50,7 @@ def inspect(
     """
     opened = [open_vocabulary(spec) for spec in specs]
     facts = named_apart([facts_of(vocabulary) for vocabulary in opened])
-    folder = out or Path("reports") / f"{_cleaned(facts[0].name)}--inspection"
+    folder = out or Path("reports") / f"{cleaned(facts[0].name)}--inspection"
     surfaces = [surfaces_of(vocabulary) for vocabulary in opened]
     lost = [unreachable(v, s) for v, s in zip(opened, surfaces, strict=True)]
     with OutputFolder(folder, overwrite=overwrite, files=INSPECTION_FILES) as output:
@@ -84,10 +84,6 @@ def inspect(
         output.write("unreachable.csv", tables.as_csv(inspection_tables.unreachable(missing)))
         output.write("report.html", inspection_page.render(document))
         return WrittenInspection(document, folder, output.finish())
-
-
-def _cleaned(name: str) -> str:
-    return "".join(c if c.isalnum() or c in "-_." else "-" for c in name).strip(".") or "vocabulary"
 
 
 def _part(

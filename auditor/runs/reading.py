@@ -85,10 +85,11 @@ def default_name(plan: Plan, names: Sequence[str]) -> str:
     corpus = "stdin" if first == "-" else Path(first.rstrip("/*?")).name.split(".")[0] or "corpus"
     more = f"-and-{len(plan.corpus) - 1}-more" if len(plan.corpus) > 1 else ""
     vocabulary = names[0] if len(names) == 1 else f"{names[0]}-and-{len(names) - 1}-more"
-    return _cleaned(f"{corpus}{more}--{vocabulary}")
+    return cleaned(f"{corpus}{more}--{vocabulary}")
 
 
-def _cleaned(name: str) -> str:
+def cleaned(name: str) -> str:
+    """Return ``name`` as the name of a folder: letters, digits and ``-_.`` stay."""
     return "".join(c if c.isalnum() or c in "-_." else "-" for c in name).strip(".") or "audit"
 
 
